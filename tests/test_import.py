@@ -1,0 +1,42 @@
+"""What `import kt_widgets` may cost: no heavy library is loaded until a name is used."""
+
+import subprocess
+import sys
+
+import pytest
+
+import kt_widgets as kt
+
+HEAVY = ["sympy", "matplotlib", "networkx", "scipy", "ipywidgets", "anywidget", "traitlets", "lark", "IPython"]
+
+
+def loaded_after(statement: str) -> set[str]:
+    code = f"import sys; {statement}; print(*sorted(sys.modules))"
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    return set(done.stdout.split())
+
+
+def test_import_loads_no_heavy_library() -> None:
+    assert loaded_after("import kt_widgets").isdisjoint(HEAVY)
+
+
+def test_algebra_loads_no_heavy_library() -> None:
+    used = loaded_after("import kt_widgets as kt; f = kt.LaurentPolynomial([1, -1, 1]); print(f * f)")
+    assert used.isdisjoint(set(HEAVY))
+
+
+def test_the_exact_chain_draws_and_graphs_nothing() -> None:
+    used = loaded_after(
+        "import kt_widgets as kt; kt.Diagram.from_braid([1, -2, 1, -2]).cover().chains().homology(1).over('Q').order()"
+    )
+    assert used.isdisjoint({"sympy", "matplotlib", "networkx", "scipy", "ipywidgets", "anywidget", "IPython"})
+
+
+@pytest.mark.parametrize("name", kt.__all__)
+def test_every_public_name_loads(name: str) -> None:
+    assert getattr(kt, name) is not None
+
+
+def test_unknown_names_are_refused() -> None:
+    with pytest.raises(AttributeError, match="no_such_name"):
+        kt.no_such_name  # noqa: B018
