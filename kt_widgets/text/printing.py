@@ -1,0 +1,183 @@
+"""The printers: plain data (terms, letters, rows of strings) to plain text, unicode or LaTeX.
+
+What is printed here is read back by `kt_widgets.text.parsing`, in every style.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from fractions import Fraction
+from itertools import groupby
+from typing import Literal
+
+__all__ = [
+    "MAX_LATEX_ENTRIES",
+    "Style",
+    "matrix_text",
+    "matrix_too_large",
+    "name_text",
+    "polynomial_text",
+    "presentation_text",
+    "word_text",
+]
+
+Style = Literal["plain", "unicode", "latex"]
+
+MAX_LATEX_ENTRIES = 400
+"""Matrices with more entries stall a page when typeset: show them as text."""
+
+# amsmath's pmatrix stops at ten columns; an array has no such bound.
+_PMATRIX_COLUMNS = 10
+
+_SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
+_SUBSCRIPTS = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
+
+
+def _power(base: str, exponent: int, style: Style) -> str:
+    if exponent == 1:
+        return base
+    if style == "unicode":
+        return base + str(exponent).translate(_SUPERSCRIPTS)
+    if style == "latex" and not 0 <= exponent <= 9:
+        return f"{base}^{{{exponent}}}"
+    return f"{base}^{exponent}"
+
+
+def _number(value: int | Fraction, style: Style) -> str:
+    if style == "latex" and value.denominator != 1:
+        return f"\\frac{{{value.numerator}}}{{{value.denominator}}}"
+    return str(value)
+
+
+def polynomial_text(terms: Mapping[int, int | Fraction], style: Style = "plain", variable: str = "t") -> str:
+    """Print a Laurent polynomial given by exponent and coefficient, lowest exponent first.
+
+    Parameters
+    ----------
+    terms : mapping
+        Exponent to coefficient; zero coefficients are skipped.
+    style : {"plain", "unicode", "latex"}
+    variable : str
+
+    Examples
+    --------
+    >>> polynomial_text({0: 1, 1: -3, 2: 1})
+    '1 - 3t + t^2'
+    >>> polynomial_text({-1: Fraction(1, 2), 3: -2}, "latex")
+    '\\\\frac{1}{2}t^{-1} - 2t^3'
+    >>> polynomial_text({-1: Fraction(-1, 2), 12: 1}, "unicode")
+    '−1/2 t⁻¹ + t¹²'
+    """
+    minus = "−" if style == "unicode" else "-"
+    pieces: list[str] = []
+    for exponent in sorted(terms):
+        coefficient = terms[exponent]
+        if not coefficient:
+            continue
+        size = -coefficient if coefficient < 0 else coefficient
+        if exponent == 0:
+            body = _number(size, style)
+        elif size == 1:
+            body = _power(variable, exponent, style)
+        else:
+            gap = " " if size.denominator != 1 and style != "latex" else ""
+            body = _number(size, style) + gap + _power(variable, exponent, style)
+        if not pieces:
+            pieces.append(minus + body if coefficient < 0 else body)
+        else:
+            pieces.append(f" {minus if coefficient < 0 else '+'} {body}")
+    return "".join(pieces) or "0"
+
+
+def name_text(name: str, style: Style = "plain") -> str:
+    """Print a generator's name: digits become an index in unicode and LaTeX.
+
+    Examples
+    --------
+    >>> name_text("x12"), name_text("x_12", "unicode"), name_text("x12", "latex")
+    ('x12', 'x₁₂', 'x_{12}')
+    """
+    index = name[1:].lstrip("_")
+    if style == "plain" or not index:
+        return name
+    return f"{name[0]}_{{{index}}}" if style == "latex" else name[0] + index.translate(_SUBSCRIPTS)
+
+
+def word_text(letters: Iterable[tuple[str, int]], style: Style = "plain") -> str:
+    """Print a word given by its letters (name, +1 or -1), as it stands.
+
+    Only runs of one and the same letter are collected into a power; nothing is cancelled.
+
+    Examples
+    --------
+    >>> word_text([("a", 1), ("b", 1), ("b", 1), ("b", -1)])
+    'a b^2 b^-1'
+    >>> word_text([("x1", -1)], "latex"), word_text([("x1", -1)], "unicode"), word_text([])
+    ('x_{1}^{-1}', 'x₁⁻¹', '1')
+    """
+    runs = (
+        _power(name_text(name, style), sign * len(list(run)), style) for (name, sign), run in groupby(letters)
+    )
+    return " ".join(runs) or "1"
+
+
+def presentation_text(
+    generators: Sequence[str], relators: Iterable[Iterable[tuple[str, int]]], style: Style = "plain"
+) -> str:
+    """Print a presentation given by names and relators.
+
+    Examples
+    --------
+    >>> presentation_text(["a", "b"], [[("a", 1), ("b", 1)]])
+    '< a, b | a b >'
+    >>> presentation_text(["a"], [], "latex")
+    '\\\\langle a \\\\mid \\\\rangle'
+    """
+    left, bar, right = {
+        "plain": ("<", "|", ">"),
+        "unicode": ("⟨", "|", "⟩"),
+        "latex": ("\\langle", "\\mid", "\\rangle"),
+    }[style]
+    names = ", ".join(name_text(name, style) for name in generators)
+    words = ", ".join(word_text(relator, style) for relator in relators)
+    return " ".join(piece for piece in (left, names, bar, words, right) if piece)
+
+
+def matrix_too_large(rows: int, columns: int) -> bool:
+    """Whether a matrix of this shape has more than `MAX_LATEX_ENTRIES` entries.
+
+    Examples
+    --------
+    >>> matrix_too_large(20, 20), matrix_too_large(20, 21)
+    (False, True)
+    """
+    return rows * columns > MAX_LATEX_ENTRIES
+
+
+def matrix_text(rows: Sequence[Sequence[str]], style: Style = "plain") -> str:
+    """Print a matrix given by its entries as strings, in aligned columns or as LaTeX.
+
+    Examples
+    --------
+    >>> print(matrix_text([["1", "1 - t"], ["-t", "0"]]))
+    [[1,  1 - t],
+     [-t, 0    ]]
+    >>> matrix_text([["1", "t"]], "latex")
+    '\\\\begin{pmatrix} 1 & t \\\\end{pmatrix}'
+    """
+    if style == "latex":
+        columns = len(rows[0]) if rows else 0
+        wide = columns > _PMATRIX_COLUMNS
+        begin = f"\\left(\\begin{{array}}{{{'c' * columns}}}" if wide else "\\begin{pmatrix}"
+        end = "\\end{array}\\right)" if wide else "\\end{pmatrix}"
+        return " ".join(filter(None, [begin, " \\\\ ".join(" & ".join(row) for row in rows), end]))
+    widths = [max(map(len, column)) for column in zip(*rows, strict=True)]
+    lines = []
+    for row in rows:
+        cells = [entry + "," for entry in row[:-1]] + list(row[-1:])
+        padded = (
+            cell.ljust(width + (i < len(cells) - 1))
+            for i, (cell, width) in enumerate(zip(cells, widths, strict=True))
+        )
+        lines.append(f"[{' '.join(padded)}]")
+    return f"[{(',' + chr(10) + ' ').join(lines)}]"
