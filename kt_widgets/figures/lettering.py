@@ -72,7 +72,9 @@ def runs(text: str) -> tuple[Run, ...]:
     """
     parts = text.split("$")
     if len(parts) % 2 == 0:
-        raise KtError("a dollar sign has no partner", where=f"label {text!r}", accepted="mathematics as $...$")
+        raise KtError(
+            "a dollar sign has no partner", where=f"label {text!r}", accepted="mathematics as $...$"
+        )
     found: list[Run] = []
     for position, part in enumerate(parts):
         if position % 2 == 0:

@@ -25,7 +25,7 @@ __all__ = [
     "style",
 ]
 
-# M. Okabe and K. Ito, Color Universal Design (2008): colours that differ for every common kind of colour vision.
+# M. Okabe and K. Ito, Color Universal Design (2008): they differ for every common kind of colour vision.
 PALETTE = ("#0072B2", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#000000")
 # Orange and sky blue are too pale for letters.
 _STROKES_ONLY = frozenset({4, 5})

@@ -9,7 +9,7 @@ from typing import TypeAlias
 
 from kt_widgets.errors import KtError
 
-__all__ = ["Arrow", "Badge", "Dot", "Item", "Label", "Point", "Region", "Scene", "Stroke"]
+__all__ = ["Arrow", "Badge", "Dot", "Item", "Label", "Point", "Region", "Scene", "Stroke", "path"]
 
 Point: TypeAlias = tuple[float, float]
 
@@ -17,30 +17,45 @@ Point: TypeAlias = tuple[float, float]
 def _rounded(point: Iterable[float], where: str) -> Point:
     x, y = (float(c) for c in point)
     if not (math.isfinite(x) and math.isfinite(y)):
-        raise KtError("a coordinate of the scene is not finite", where=where, accepted="finite numbers of points")
+        raise KtError(
+            "a coordinate of the scene is not finite", where=where, accepted="finite numbers of points"
+        )
     # Adding 0.0 turns -0.0 into 0.0, which prints the same everywhere.
     return round(x, 2) + 0.0, round(y, 2) + 0.0
 
 
-def _rounded_path(points: Iterable[Iterable[float]], where: str, least: int) -> tuple[Point, ...]:
-    path = tuple(_rounded(point, where) for point in points)
-    if len(path) < least:
+def path(points: Iterable[Iterable[float]], where: str = "", least: int = 2) -> tuple[Point, ...]:
+    """Points given in any form (pairs, rows of an array) as a tuple of pairs, rounded to 0.01.
+
+    Raises
+    ------
+    KtError
+        If there are fewer than `least` points, or one is not finite.
+
+    Examples
+    --------
+    >>> path([[0, 0.001], [1, 2]])
+    ((0.0, 0.0), (1.0, 2.0))
+    """
+    found = tuple(_rounded(point, where) for point in points)
+    if len(found) < least:
         raise KtError(
-            f"a path of {len(path)} points cannot be drawn", where=where, accepted=f"{least} or more points"
+            f"a path of {len(found)} points is too short", where=where, accepted=f"{least} or more points"
         )
-    return path
+    return found
 
 
 @dataclass(frozen=True, slots=True)
 class Stroke:
-    """A line along `points`; `id` is the text form of the place that it shows, such as ``arc:3``.
+    """A line along `points`; `id` is the text form of the place shown, such as ``arc:3``.
 
-    The role says how it is drawn (see `kt_widgets.figures.presets.style`), `colour_index` counts from 0 in the
-    palette; None means ink. Coordinates are points (1/72 inch), y upwards, and are rounded to 0.01.
+    The role says how it is drawn (see `kt_widgets.figures.presets.style`), `colour_index` counts from 0 in
+    the palette, where None means ink. Coordinates are points (1/72 inch), y upwards; every item rounds them
+    to 0.01.
 
     Examples
     --------
-    >>> Stroke("arc:1", [(0, 0), (10, 0.004)], "strand").points
+    >>> Stroke("arc:1", ((0, 0), (10, 0.004)), "strand").points
     ((0.0, 0.0), (10.0, 0.0))
     """
 
@@ -51,24 +66,8 @@ class Stroke:
     closed: bool = False
     colour_index: int | None = None
 
-    def __init__(
-        self,
-        id: str,
-        points: Iterable[Iterable[float]],
-        role: str,
-        z: int = 0,
-        closed: bool = False,
-        colour_index: int | None = None,
-    ) -> None:
-        _fill(
-            self,
-            id=id,
-            points=_rounded_path(points, id, 2),
-            role=role,
-            z=z,
-            closed=closed,
-            colour_index=colour_index,
-        )
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "points", path(self.points, self.id))
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,22 +80,13 @@ class Region:
     z: int = 0
     colour_index: int | None = None
 
-    def __init__(
-        self,
-        id: str,
-        points: Iterable[Iterable[float]],
-        role: str,
-        z: int = 0,
-        colour_index: int | None = None,
-    ) -> None:
-        _fill(
-            self, id=id, points=_rounded_path(points, id, 3), role=role, z=z, colour_index=colour_index
-        )
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "points", path(self.points, self.id, least=3))
 
 
 @dataclass(frozen=True, slots=True)
 class Arrow:
-    """An arrow head at `tip`, pointing along `direction` (any length but 0); its size comes from its role."""
+    """An arrow head with its tip at `tip`, pointing along `direction`; its size comes from its role."""
 
     id: str
     tip: Point
@@ -105,24 +95,14 @@ class Arrow:
     z: int = 0
     colour_index: int | None = None
 
-    def __init__(
-        self,
-        id: str,
-        tip: Iterable[float],
-        direction: Iterable[float],
-        role: str,
-        z: int = 0,
-        colour_index: int | None = None,
-    ) -> None:
-        dx, dy = direction
+    def __post_init__(self) -> None:
+        dx, dy = self.direction
         length = math.hypot(dx, dy)
         if not (math.isfinite(length) and length > 0):
-            raise KtError("an arrow has no direction", where=id, accepted="a finite vector other than 0")
+            raise KtError("an arrow has no direction", where=self.id, accepted="a finite vector other than 0")
         # Unit vectors need more digits than points do: at a head of 10 points 0.0001 is far below 0.01.
-        unit = (round(dx / length, 4) + 0.0, round(dy / length, 4) + 0.0)
-        _fill(
-            self, id=id, tip=_rounded(tip, id), direction=unit, role=role, z=z, colour_index=colour_index
-        )
+        object.__setattr__(self, "direction", (round(dx / length, 4) + 0.0, round(dy / length, 4) + 0.0))
+        object.__setattr__(self, "tip", _rounded(self.tip, self.id))
 
 
 @dataclass(frozen=True, slots=True)
@@ -141,30 +121,14 @@ class Label:
     z: int = 0
     colour_index: int | None = None
 
-    def __init__(
-        self,
-        id: str,
-        text: str,
-        position: Iterable[float],
-        role: str = "label",
-        anchor: str = "centre",
-        z: int = 0,
-        colour_index: int | None = None,
-    ) -> None:
-        if anchor not in ("left", "centre", "right"):
+    def __post_init__(self) -> None:
+        if self.anchor not in ("left", "centre", "right"):
             raise KtError(
-                f"a label has no anchor {anchor!r}", where=id, accepted="'left', 'centre' or 'right'"
+                f"a label has no anchor {self.anchor!r}",
+                where=self.id,
+                accepted="'left', 'centre' or 'right'",
             )
-        _fill(
-            self,
-            id=id,
-            text=text,
-            position=_rounded(position, id),
-            role=role,
-            anchor=anchor,
-            z=z,
-            colour_index=colour_index,
-        )
+        object.__setattr__(self, "position", _rounded(self.position, self.id))
 
 
 @dataclass(frozen=True, slots=True)
@@ -178,24 +142,9 @@ class Dot:
     z: int = 0
     colour_index: int | None = None
 
-    def __init__(
-        self,
-        id: str,
-        position: Iterable[float],
-        role: str,
-        radius: float = 0.0,
-        z: int = 0,
-        colour_index: int | None = None,
-    ) -> None:
-        _fill(
-            self,
-            id=id,
-            position=_rounded(position, id),
-            role=role,
-            radius=round(float(radius), 2),
-            z=z,
-            colour_index=colour_index,
-        )
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "position", _rounded(self.position, self.id))
+        object.__setattr__(self, "radius", round(float(self.radius), 2))
 
 
 @dataclass(frozen=True, slots=True)
@@ -209,33 +158,11 @@ class Badge:
     z: int = 0
     colour_index: int | None = None
 
-    def __init__(
-        self,
-        id: str,
-        text: str,
-        position: Iterable[float],
-        role: str = "badge",
-        z: int = 0,
-        colour_index: int | None = None,
-    ) -> None:
-        _fill(
-            self,
-            id=id,
-            text=text,
-            position=_rounded(position, id),
-            role=role,
-            z=z,
-            colour_index=colour_index,
-        )
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "position", _rounded(self.position, self.id))
 
 
 Item: TypeAlias = Stroke | Region | Arrow | Label | Dot | Badge
-
-
-def _fill(item: object, **values: object) -> None:
-    """Set the fields of a frozen item in its constructor, after they were checked and rounded."""
-    for name, value in values.items():
-        object.__setattr__(item, name, value)
 
 
 @dataclass(frozen=True)
@@ -260,7 +187,7 @@ class Scene:
 
     Examples
     --------
-    >>> scene = Scene((Stroke("arc:1", [(0, 0), (10, 5)], "strand"),), 10, 5, title="a line")
+    >>> scene = Scene((Stroke("arc:1", ((0, 0), (10, 5)), "strand"),), 10, 5, title="a line")
     >>> scene
     Scene(1 item, 10 x 5 pt, 'a line')
     >>> [item.role for item in scene.at("arc:1")]
@@ -278,7 +205,8 @@ class Scene:
         size = _rounded((self.width, self.height), "the size of the scene")
         if min(size) <= 0:
             raise KtError(
-                f"a scene cannot be {self.width} by {self.height} points", accepted="a positive width and height"
+                f"a scene cannot be {self.width} by {self.height} points",
+                accepted="a positive width and height",
             )
         object.__setattr__(self, "width", size[0])
         object.__setattr__(self, "height", size[1])

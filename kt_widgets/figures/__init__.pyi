@@ -1,0 +1,7 @@
+from .cover_figure import cover
+from .diagram_figure import diagram
+from .dossier import dossier
+from .drawing import Drawing
+from .explain import explain
+
+__all__ = ["Drawing", "cover", "diagram", "dossier", "explain"]
