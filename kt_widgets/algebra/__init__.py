@@ -1,0 +1,1 @@
+"""Laurent polynomials, their matrices, elimination, Smith forms and ideals; one file touches python-flint."""

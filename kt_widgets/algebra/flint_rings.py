@@ -1,0 +1,237 @@
+"""Coefficient rings Z, Q and F_p on python-flint: the only file of the package that imports flint."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from fractions import Fraction
+from functools import lru_cache
+from math import lcm
+from operator import index
+from typing import Any, TypeAlias
+
+from flint import fmpq_poly, fmpz, fmpz_mat, fmpz_poly, nmod_poly
+
+from kt_widgets.errors import AlgebraError
+
+__all__ = ["MAX_PRIME", "FlintPolynomial", "Ring", "RingName", "integer_kernel", "ring"]
+
+RingName: TypeAlias = str | int
+"""``"Z"``, ``"Q"`` or a prime number p, which stands for the field of p elements."""
+
+FlintPolynomial: TypeAlias = Any
+"""A polynomial of python-flint; mutable, so it never leaves the algebra room."""
+
+MAX_PRIME = 2**31
+
+
+class Ring:
+    """A ring of coefficients: how python numbers become flint polynomials and come back.
+
+    Get one by `ring`; there is one object per ring, so rings are compared by ``is``.
+
+    Attributes
+    ----------
+    name : RingName
+    is_field : bool
+    text, latex : str
+        How the ring of Laurent polynomials over it is written.
+    zero, one : FlintPolynomial
+    """
+
+    __slots__ = ("is_field", "latex", "name", "one", "text", "zero")
+
+    name: RingName
+    is_field: bool
+    text: str
+    latex: str
+
+    def __init__(self) -> None:
+        self.zero = self.polynomial([])
+        self.one = self.polynomial([1])
+
+    def __repr__(self) -> str:
+        return f"ring({self.name!r})"
+
+    def __reduce__(self) -> tuple[object, ...]:
+        return (ring, (self.name,))
+
+    def number(self, value: object) -> Any:
+        """The python number that stands for `value` in this ring; `AlgebraError` if there is none."""
+        raise NotImplementedError
+
+    def polynomial(self, coefficients: Sequence[Any]) -> FlintPolynomial:
+        """The flint polynomial with these coefficients, lowest first, each a result of `number`."""
+        raise NotImplementedError
+
+    def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
+        """The coefficients as python numbers, lowest first."""
+        raise NotImplementedError
+
+    def is_unit(self, coefficient: Any) -> bool:
+        """Whether a nonzero flint coefficient has an inverse."""
+        return True
+
+    def normal(self, polynomial: FlintPolynomial) -> FlintPolynomial:
+        """The associate with leading coefficient positive (over Z) or 1 (over a field)."""
+        return polynomial / self.constant(polynomial) if polynomial else polynomial
+
+    def constant(self, polynomial: FlintPolynomial) -> FlintPolynomial:
+        """The leading coefficient as a constant polynomial."""
+        return self.one * polynomial[len(polynomial) - 1]
+
+    def _integer(self, value: object) -> int:
+        # index() also takes the integers of numpy, and no float.
+        try:
+            return index(value)  # type: ignore[arg-type]
+        except TypeError:
+            accepted = "an int or Fraction" if self.is_field else "an int (Fractions live over 'Q')"
+            raise AlgebraError(f"{value!r} is no coefficient of {self.text}", accepted=accepted) from None
+
+
+class _Integers(Ring):
+    __slots__ = ()
+    name, is_field = "Z", False
+    text, latex = "Z[t,1/t]", r"\mathbb{Z}[t^{\pm 1}]"
+
+    def number(self, value: object) -> int:
+        if isinstance(value, Fraction) and value.denominator == 1:
+            return value.numerator
+        return self._integer(value)
+
+    def polynomial(self, coefficients: Sequence[Any]) -> FlintPolynomial:
+        return fmpz_poly(coefficients)
+
+    def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
+        return [int(c) for c in polynomial.coeffs()]
+
+    def is_unit(self, coefficient: Any) -> bool:
+        return bool(coefficient == 1 or coefficient == -1)
+
+    def normal(self, polynomial: FlintPolynomial) -> FlintPolynomial:
+        return -polynomial if polynomial and polynomial[len(polynomial) - 1] < 0 else polynomial
+
+
+class _Rationals(Ring):
+    __slots__ = ()
+    name, is_field = "Q", True
+    text, latex = "Q[t,1/t]", r"\mathbb{Q}[t^{\pm 1}]"
+
+    def number(self, value: object) -> Fraction:
+        return value if isinstance(value, Fraction) else Fraction(self._integer(value))
+
+    def polynomial(self, coefficients: Sequence[Any]) -> FlintPolynomial:
+        common = lcm(*(c.denominator for c in coefficients))
+        numerators = [c.numerator * (common // c.denominator) for c in coefficients]
+        return fmpq_poly(numerators, common)
+
+    def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
+        common = int(polynomial.denom())
+        return [Fraction(int(c), common) for c in polynomial.numer().coeffs()]
+
+
+class _PrimeField(Ring):
+    __slots__ = ("p",)
+    is_field = True
+
+    def __init__(self, p: int) -> None:
+        self.name = self.p = p
+        self.text = f"F_{p}[t,1/t]"
+        self.latex = rf"\mathbb{{F}}_{{{p}}}[t^{{\pm 1}}]"
+        super().__init__()
+
+    def number(self, value: object) -> int:
+        if isinstance(value, Fraction):
+            if value.denominator % self.p == 0:
+                raise AlgebraError(
+                    f"the denominator of {value} is 0 modulo {self.p}",
+                    accepted=f"fractions whose denominator is prime to {self.p}",
+                )
+            return value.numerator * pow(value.denominator, -1, self.p) % self.p
+        return self._integer(value) % self.p
+
+    def polynomial(self, coefficients: Sequence[Any]) -> FlintPolynomial:
+        return nmod_poly(coefficients, self.p)
+
+    def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
+        return [int(c) for c in polynomial.coeffs()]
+
+
+_INTEGERS = _Integers()
+_RATIONALS = _Rationals()
+
+
+@lru_cache(maxsize=256)
+def _prime_field(p: int) -> Ring:
+    if not 2 <= p < MAX_PRIME:
+        raise AlgebraError(
+            f"{p} is no prime below 2^31", where="ring", accepted="'Z', 'Q' or a prime p < 2^31"
+        )
+    if not fmpz(p).is_prime():
+        small = next(d for d in range(2, p) if p % d == 0)
+        raise AlgebraError(
+            f"the integers modulo {p} = {small} * {p // small} are not a field",
+            where="ring",
+            accepted="'Z', 'Q' or a prime p < 2^31",
+        )
+    return _PrimeField(p)
+
+
+def ring(name: RingName) -> Ring:
+    """The ring of coefficients called `name`.
+
+    Parameters
+    ----------
+    name : "Z", "Q" or int
+        An int is a prime p < 2^31 and names the field of p elements.
+
+    Raises
+    ------
+    AlgebraError
+        For any other name, and for composite p.
+
+    Examples
+    --------
+    >>> ring("Q").text
+    'Q[t,1/t]'
+    >>> ring(6)
+    Traceback (most recent call last):
+    ...
+    kt_widgets.errors.AlgebraError: the integers modulo 6 = 2 * 3 are not a field (at ring);
+    accepted: 'Z', 'Q' or a prime p < 2^31
+    """
+    if name == "Z":
+        return _INTEGERS
+    if name == "Q":
+        return _RATIONALS
+    if isinstance(name, int) and not isinstance(name, bool):
+        return _prime_field(name)
+    raise AlgebraError(f"{name!r} names no ring", where="ring", accepted="'Z', 'Q' or a prime p < 2^31")
+
+
+def integer_kernel(rows: Sequence[Sequence[int]], columns: int) -> list[list[int]]:
+    """A basis of the integer vectors that every row sends to 0; the first nonzero entry of each is positive.
+
+    The Hermite form of the transpose with an identity beside it leaves the kernel beside its zero rows;
+    LLL then makes the basis short.
+
+    Parameters
+    ----------
+    rows : sequence of sequences of int
+    columns : int
+        The length of the rows, needed when there is none.
+
+    Examples
+    --------
+    >>> integer_kernel([[2, 0, 3]], 3)
+    [[0, 1, 0], [3, 0, -2]]
+    """
+    height = len(rows)
+    if columns == 0:
+        return []
+    augmented = [[row[j] for row in rows] + [int(i == j) for i in range(columns)] for j in range(columns)]
+    hermite = fmpz_mat(augmented).hnf().tolist()
+    kernel = [row[height:] for row in hermite if not any(row[:height])]
+    if not kernel:
+        return []
+    reduced = [[int(x) for x in row] for row in fmpz_mat(kernel).lll().tolist()]
+    return [row if next(x for x in row if x) > 0 else [-x for x in row] for row in reduced]

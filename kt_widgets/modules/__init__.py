@@ -1,0 +1,1 @@
+"""Finitely presented modules over rings of Laurent polynomials."""
