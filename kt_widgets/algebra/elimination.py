@@ -1,0 +1,212 @@
+"""Unit pivots taken out of a matrix, and the transforms that prove two matrices equivalent."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from kt_widgets.algebra.laurent import LaurentPolynomial, subtract_product
+from kt_widgets.algebra.matrix import LaurentMatrix
+from kt_widgets.algebra.sparse import Pivot, Row, eliminate_units
+from kt_widgets.errors import AlgebraError, CertificateError
+
+__all__ = ["Elimination", "Transforms", "check_equal", "eliminate"]
+
+
+def check_equal(left: LaurentMatrix, right: LaurentMatrix, name: str) -> None:
+    """Compare two matrices entry by entry.
+
+    Parameters
+    ----------
+    left, right : LaurentMatrix
+        What was multiplied out, and what it should be.
+    name : str
+        How the first is called in the error, for example "U A V".
+
+    Raises
+    ------
+    CertificateError
+        Naming the first entry (rows and columns from 1) in which they differ, or the shapes or rings.
+
+    Examples
+    --------
+    >>> check_equal(LaurentMatrix([["t", 1]]), LaurentMatrix([["t", 2]]), "U A V")
+    Traceback (most recent call last):
+    kt_widgets.errors.CertificateError: U A V is 1 where it should be 2 (at entry (1, 2) of U A V)
+    """
+    if left.shape != right.shape or left.over != right.over:
+        raise CertificateError(
+            f"{name} has shape {left.shape} over {left.over!r}, not {right.shape} over {right.over!r}",
+            where=name,
+        )
+    if left == right:
+        return
+    places = sorted({(i, j) for m in (left, right) for i, j, _ in m.entries()})
+    i, j = next(place for place in places if left[place] != right[place])
+    raise CertificateError(
+        f"{name} is {left[i, j]} where it should be {right[i, j]}",
+        where=f"entry ({i + 1}, {j + 1}) of {name}",
+    )
+
+
+@dataclass(frozen=True)
+class Transforms:
+    """Invertible matrices L and R that bring a matrix A to B = L A R, with their inverses.
+
+    Examples
+    --------
+    >>> a = LaurentMatrix([["t", "1 - t"]])
+    >>> p = eliminate(a).transforms()
+    >>> print(p.left @ a @ p.right)
+    [[1, 0]]
+    """
+
+    left: LaurentMatrix
+    left_inverse: LaurentMatrix
+    right: LaurentMatrix
+    right_inverse: LaurentMatrix
+
+    def __matmul__(self, other: Transforms) -> Transforms:
+        """First `other`, then this: ``(L1 L2) A (R2 R1)``."""
+        return Transforms(
+            self.left @ other.left,
+            other.left_inverse @ self.left_inverse,
+            other.right @ self.right,
+            self.right_inverse @ other.right_inverse,
+        )
+
+    def verify(
+        self, source: LaurentMatrix, target: LaurentMatrix, names: tuple[str, str, str] = ("L", "A", "R")
+    ) -> bool:
+        """Multiply out: both pairs are inverse to each other, and L A R is the target.
+
+        Raises
+        ------
+        CertificateError
+            Naming the first wrong entry of the first wrong product.
+        """
+        left, middle, right = names
+        try:
+            for side, inverse, name in (
+                (self.left, self.left_inverse, left),
+                (self.right, self.right_inverse, right),
+            ):
+                if side.shape[0] != side.shape[1]:
+                    raise CertificateError(f"{name} has shape {side.shape}: it is not square", where=name)
+                # Of square matrices over a domain, a right inverse is a left inverse too.
+                one = LaurentMatrix.identity(side.shape[0], source.over)
+                check_equal(side @ inverse, one, f"{name} {name}_inverse")
+            check_equal(self.left @ source @ self.right, target, f"{left} {middle} {right}")
+        except AlgebraError as error:
+            raise CertificateError(f"the matrices do not multiply: {error.what}", where=str(names)) from None
+        return True
+
+
+@dataclass(frozen=True)
+class Elimination:
+    """A matrix, the unit pivots taken out of it, and the core that is left.
+
+    Attributes
+    ----------
+    matrix : LaurentMatrix
+    core : LaurentMatrix
+        No entry is a unit.
+    core_rows, core_columns : tuple of int
+        Where the core's rows and columns sat in the matrix, from 0.
+    pivots : tuple of Pivot
+        The log, in order.
+
+    Examples
+    --------
+    >>> e = eliminate(LaurentMatrix([["1 - t", "t", "-1"], ["-1", "1 - t", "t"], ["t", "-1", "1 - t"]]))
+    >>> print(e.core, len(e.pivots))
+    [[-t^-1 + 1 - t, t^-1 - 1 + t ],
+     [t^-1 - 1 + t,  -t^-1 + 1 - t]] 1
+    """
+
+    matrix: LaurentMatrix
+    core: LaurentMatrix
+    core_rows: tuple[int, ...]
+    core_columns: tuple[int, ...]
+    pivots: tuple[Pivot, ...]
+
+    @property
+    def result(self) -> LaurentMatrix:
+        """The matrix ``diag(1, ..., 1, core)``."""
+        return LaurentMatrix.blocks(LaurentMatrix.identity(len(self.pivots), self.matrix.over), self.core)
+
+    def transforms(self) -> Transforms:
+        """P, Q and their inverses with ``P A Q = diag(1, ..., 1, core)``, made from the log."""
+        height, width = self.matrix.shape
+        over = self.matrix.over
+        one = LaurentPolynomial.constant(1, over)
+        left: list[Row] = [{i: one} for i in range(height)]  # rows of P
+        left_inverse: list[Row] = [{i: one} for i in range(height)]  # columns of its inverse
+        right: list[Row] = [{j: one} for j in range(width)]  # columns of Q
+        right_inverse: list[Row] = [{j: one} for j in range(width)]  # rows of its inverse
+        for pivot in self.pivots:
+            for k, factor in pivot.below:
+                _subtract(left[k], factor, left[pivot.row])
+                _subtract(left_inverse[pivot.row], -factor, left_inverse[k])
+            inverse = pivot.unit.inverse()
+            for c, value in pivot.beside.items():
+                factor = value * inverse
+                _subtract(right[c], factor, right[pivot.column])
+                _subtract(right_inverse[pivot.column], -factor, right_inverse[c])
+            left[pivot.row] = {j: f * inverse for j, f in left[pivot.row].items()}
+            left_inverse[pivot.row] = {j: f * pivot.unit for j, f in left_inverse[pivot.row].items()}
+        row_order = [p.row for p in self.pivots] + list(self.core_rows)
+        column_order = [p.column for p in self.pivots] + list(self.core_columns)
+
+        def square(lines: list[Row], order: list[int]) -> LaurentMatrix:
+            return LaurentMatrix._trusted((lines[i] for i in order), over, (len(order), len(order)))
+
+        return Transforms(
+            square(left, row_order),
+            square(left_inverse, row_order).transpose(),
+            square(right, column_order).transpose(),
+            square(right_inverse, column_order),
+        )
+
+    def verify(self) -> bool:
+        """Check the transforms by multiplication; `CertificateError` names a wrong entry."""
+        return self.transforms().verify(self.matrix, self.result, ("P", "A", "Q"))
+
+
+def _subtract(row: Row, factor: LaurentPolynomial, other: Row) -> None:
+    for j, value in other.items():
+        old = row.get(j)
+        if old is None:
+            row[j] = -(factor * value)
+        else:
+            new = subtract_product(old, factor, value)
+            if new:
+                row[j] = new
+            else:
+                del row[j]
+
+
+def eliminate(matrix: LaurentMatrix) -> Elimination:
+    """Take out unit pivots until no entry is a unit: +-t^k over Z, c t^k over a field.
+
+    The core has the same cokernel, and is small for the matrix of a diagram (2 or 3 rows at 20 crossings).
+
+    Parameters
+    ----------
+    matrix : LaurentMatrix
+
+    Returns
+    -------
+    Elimination
+    """
+    rows = matrix.sparse_rows()
+    pivots = tuple(eliminate_units(rows))
+    used, met = {p.row for p in pivots}, {p.column for p in pivots}
+    core_rows = tuple(i for i in range(matrix.shape[0]) if i not in used)
+    core_columns = tuple(j for j in range(matrix.shape[1]) if j not in met)
+    new = {j: k for k, j in enumerate(core_columns)}
+    core = LaurentMatrix._trusted(
+        ({new[j]: f for j, f in rows[i].items()} for i in core_rows),
+        matrix.over,
+        (len(core_rows), len(core_columns)),
+    )
+    return Elimination(matrix, core, core_rows, core_columns, pivots)
