@@ -1,0 +1,442 @@
+"""`Diagram`: an oriented link diagram, kept as its planar diagram code."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass, field
+from functools import cached_property
+from typing import Any
+
+from kt_widgets.diagrams.braid import braid_code, braid_text
+from kt_widgets.diagrams.dowker import dowker_code, dowker_of, dowker_text
+from kt_widgets.diagrams.entries import circle_count, items
+from kt_widgets.diagrams.gauss import gauss_code, gauss_of, gauss_text
+from kt_widgets.diagrams.notation import read_line
+from kt_widgets.diagrams.planar_diagram import planar_code, planar_text
+from kt_widgets.diagrams.planar_map import Code, PlanarMap, Slots, ends_of_edges
+from kt_widgets.text.portable import Portable
+
+__all__ = ["Arc", "Component", "Crossing", "Diagram", "Face"]
+
+
+@dataclass(frozen=True, slots=True)
+class Crossing:
+    """A crossing: its edges (incoming under-edge first, counter-clockwise), its sign, its arcs."""
+
+    number: int
+    edges: Slots
+    sign: int
+    over_arc: int
+    under_in: int
+    under_out: int
+
+
+@dataclass(frozen=True, slots=True)
+class Arc:
+    """An arc, from one under-crossing to the next: its component and its edges in order of travel.
+
+    A component that never goes under has one arc; that of a crossingless component has no edges.
+    """
+
+    number: int
+    component: int
+    edges: tuple[int, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Component:
+    """A component: its edges from the base edge on, and its arcs, the first of which holds the base edge."""
+
+    number: int
+    edges: tuple[int, ...]
+    arcs: tuple[int, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Face:
+    """A face: its boundary as pairs (edge, side), walked with the face on the left.
+
+    The side is +1 where the walk follows the edge's direction (the face is on the left of the edge), else -1.
+    """
+
+    number: int
+    boundary: tuple[tuple[int, int], ...]
+
+    @property
+    def edges(self) -> tuple[int, ...]:
+        """The edges of the boundary; an edge with the face on both sides would occur twice."""
+        return tuple(edge for edge, _ in self.boundary)
+
+
+@dataclass(frozen=True, init=False, repr=False)
+class Diagram(Portable, kind="diagram"):
+    """An oriented link diagram.
+
+    The edges are numbered 1 to 2n, consecutively along each component in its direction; the lowest edge of a
+    component is its base edge. Crossing c has the edges ``slots[c - 1]``: incoming under-edge first, then
+    counter-clockwise. Equality compares this labelled data; `same_diagram` looks for a relabelling.
+
+    Parameters
+    ----------
+    slots : sequence of 4-tuples of int
+        The planar diagram code.
+    signs : sequence of +1 and -1, optional
+        Needed only where a component of two edges is over at both its crossings.
+    circles : int, optional
+        The number of crossingless components; they come last.
+
+    Raises
+    ------
+    DiagramError
+        If the code is inconsistent or not planar; the message names the crossing and what would be accepted.
+    LimitError
+        Beyond 100 000 crossings or 10 000 crossingless components.
+
+    Examples
+    --------
+    >>> d = Diagram.from_braid([1, -2, 1, -2])
+    >>> d
+    Diagram(4 crossings, 1 component, 'braid 1 -2 1 -2')
+    >>> print(d)
+    planar 4,2,5,1; 2,7,3,8; 8,6,1,5; 6,3,7,4
+    """
+
+    slots: tuple[Slots, ...]
+    signs: tuple[int, ...]
+    circles: int
+    source: str = field(compare=False)
+
+    def __init__(
+        self, slots: Iterable[Sequence[int]], signs: Iterable[int] | None = None, circles: int = 0
+    ) -> None:
+        code = planar_code(slots, signs, circles)
+        self._set(code, planar_text(code))
+
+    def _set(self, code: Code, source: str) -> None:
+        self.__dict__.update(slots=code[0], signs=code[1], circles=code[2], source=source)
+
+    @classmethod
+    def _trusted(cls, code: Code, source: str = "") -> Diagram:
+        """A diagram of a code that is known to be consistent and planar."""
+        diagram = object.__new__(cls)
+        diagram._set(code, source or planar_text(code))
+        return diagram
+
+    # notations
+
+    @classmethod
+    def from_braid(cls, word: Iterable[int], strands: int | None = None) -> Diagram:
+        """The closure of a braid; see `kt_widgets.diagrams.braid`.
+
+        Strands run upwards; letter +i is a positive crossing of strands i and i + 1, letter -i a negative
+        one. Crossings are in the order of the letters; unused strands are crossingless components.
+
+        Examples
+        --------
+        >>> Diagram.from_braid([1, 1, 1]).signs
+        (1, 1, 1)
+        """
+        letters = items(word, "the braid word", "a list of letters")
+        return cls._trusted(braid_code(letters, strands), braid_text(letters, strands))
+
+    @classmethod
+    def from_gauss(cls, components: Iterable[Iterable[int]], signs: Iterable[int]) -> Diagram:
+        """The diagram of a signed Gauss code: a list per component, +i passing over crossing i, -i under.
+
+        `signs` are those of crossings 1, 2, ...; an empty list is a crossingless component.
+
+        Examples
+        --------
+        >>> Diagram.from_gauss([[1, -2, 3, -1, 2, -3]], signs=[1, 1, 1]).writhe
+        3
+        """
+        code = gauss_code(components, signs)
+        return cls._trusted(code, gauss_text(*gauss_of(code)))
+
+    @classmethod
+    def from_dowker(cls, components: Iterable[int] | Iterable[Iterable[int]]) -> Diagram:
+        """The diagram of a Dowker-Thistlethwaite code, flat for a knot, a list per component for a link.
+
+        Crossing i is the one with the odd label 2i - 1; a minus sign says that the even pass is over. The
+        code leaves each summand's mirror image open: its first crossing is made positive. See
+        `kt_widgets.diagrams.dowker` for links.
+
+        Examples
+        --------
+        >>> Diagram.from_dowker([4, 6, 2]).signs
+        (1, 1, 1)
+        """
+        code = dowker_code(components)
+        return cls._trusted(code, dowker_text(dowker_of(gauss_of(code)[0])))
+
+    @classmethod
+    def from_planar_diagram(
+        cls, tuples: Iterable[Sequence[int]], signs: Iterable[int] | None = None, circles: int = 0
+    ) -> Diagram:
+        """The diagram of a planar diagram code; the same as the constructor.
+
+        Examples
+        --------
+        >>> Diagram.from_planar_diagram([(1, 4, 2, 5), (5, 2, 6, 3), (3, 6, 4, 1)]).writhe
+        -3
+        """
+        return cls(tuples, signs, circles)
+
+    @classmethod
+    def parse(cls, text: str) -> Diagram:
+        """Read one line of text: a notation's name, then the code.
+
+        Raises
+        ------
+        ParseError
+            If the line cannot be read; with line and column.
+        DiagramError
+            If the code is inconsistent, not planar or not realisable.
+
+        Examples
+        --------
+        >>> Diagram.parse("braid 1 -2 1 -2")
+        Diagram(4 crossings, 1 component, 'braid 1 -2 1 -2')
+        >>> Diagram.parse("gauss 1 -2 / -1 2 signs - -").linking_matrix()
+        ((0, -1), (-1, 0))
+        >>> Diagram.parse("dowker 4 / 2").linking_matrix()
+        ((0, 1), (1, 0))
+        >>> Diagram.parse("planar 1,4,2,5; 5,2,6,3; 3,6,4,1").writhe
+        -3
+        """
+        line = read_line(text)
+        circles = circle_count(line.single("circles") or 0)
+        if line.notation == "braid":
+            return cls.from_braid(line.groups[0] if line.groups else [], line.single("strands"))
+        if line.notation == "planar":
+            return cls(line.groups, line.options.get("signs"), circles)
+        crossingless: list[list[int]] = [[]] * circles
+        if line.notation == "dowker":
+            return cls.from_dowker([*line.groups, *crossingless])
+        return cls.from_gauss([*line.groups, *crossingless], line.options.get("signs", []))
+
+    def to_gauss(self) -> tuple[tuple[tuple[int, ...], ...], tuple[int, ...]]:
+        """The signed Gauss code: the passes of each component from its base edge on, and the signs.
+
+        Examples
+        --------
+        >>> Diagram.from_braid([1, 1]).to_gauss()
+        (((1, -2), (-1, 2)), (1, 1))
+        """
+        return gauss_of((self.slots, self.signs, self.circles))
+
+    def to_dowker(self) -> tuple[tuple[int, ...], ...]:
+        """The Dowker-Thistlethwaite code, a tuple per component.
+
+        The first component of each connected piece is numbered from its base edge on; another one from its
+        base edge or the edge after, so that odd meets even at each crossing.
+
+        Examples
+        --------
+        >>> Diagram.from_braid([1, 1, 1]).to_dowker()
+        ((4, 6, 2),)
+        """
+        return dowker_of(self.to_gauss()[0])
+
+    def __str__(self) -> str:
+        return planar_text((self.slots, self.signs, self.circles))
+
+    def __repr__(self) -> str:
+        source = self.source if len(self.source) <= 60 else self.source[:57] + "..."
+        counts = f"{_counted(len(self.slots), 'crossing')}, {_counted(len(self.components), 'component')}"
+        return f"Diagram({counts}, {source!r})"
+
+    def __reduce__(self) -> tuple[object, ...]:
+        # the derived data are not pickled
+        return Diagram._trusted, ((self.slots, self.signs, self.circles), self.source)
+
+    def to_data(self) -> dict[str, Any]:
+        """Plain data for `to_json`."""
+        return {
+            "slots": [list(row) for row in self.slots],
+            "signs": list(self.signs),
+            "circles": self.circles,
+            "source": self.source,
+        }
+
+    @classmethod
+    def from_data(cls, data: dict[str, Any]) -> Diagram:
+        """The diagram of `to_data`; everything is checked again."""
+        diagram = cls(data["slots"], data["signs"], data["circles"])
+        if not isinstance(data["source"], str):
+            raise TypeError("the source is not a text")
+        diagram.__dict__["source"] = data["source"]
+        return diagram
+
+    # what the code determines
+
+    @cached_property
+    def _ends(self) -> tuple[list[int], list[int]]:
+        """The darts where each edge starts and ends, by edge."""
+        return ends_of_edges(self.slots, self.signs)
+
+    @cached_property
+    def planar_map(self) -> PlanarMap:
+        """The map of the diagram on the sphere; dart 4c + s is slot s of crossing c + 1."""
+        return PlanarMap.from_ends(*self._ends)
+
+    @cached_property
+    def _spans(self) -> tuple[tuple[int, int], ...]:
+        """The first and last edge of each component that has crossings."""
+        closing = []
+        for (under_in, right, under_out, left), sign in zip(self.slots, self.signs, strict=True):
+            over_in, over_out = (left, right) if sign > 0 else (right, left)
+            if under_out < under_in:
+                closing.append((under_out, under_in))
+            if over_out < over_in:
+                closing.append((over_out, over_in))
+        return tuple(sorted(closing))
+
+    @cached_property
+    def _arc_edges(self) -> tuple[tuple[tuple[int, ...], ...], ...]:
+        """The edges of each arc, per component; crossingless components come last."""
+        ends_arc = {row[0] for row in self.slots}
+        components = []
+        for first, last in self._spans:
+            arcs: list[list[int]] = [[]]
+            for edge in range(first, last + 1):
+                arcs[-1].append(edge)
+                if edge in ends_arc:
+                    arcs.append([])
+            # the last stretch runs on into the first
+            if len(arcs) > 1:
+                arcs[0] = arcs.pop() + arcs[0]
+            components.append(tuple(map(tuple, arcs)))
+        return (*components, *[((),)] * self.circles)
+
+    @cached_property
+    def arc_of_edge(self) -> tuple[int, ...]:
+        """The number of the arc that holds each edge 1, 2, ...; entry 0 is unused."""
+        owner = [0] * (2 * len(self.slots) + 1)
+        number = 0
+        for component in self._arc_edges:
+            for edges in component:
+                number += 1
+                for edge in edges:
+                    owner[edge] = number
+        return tuple(owner)
+
+    @cached_property
+    def crossings(self) -> tuple[Crossing, ...]:
+        """The crossings, in the order of the code."""
+        arc = self.arc_of_edge
+        return tuple(
+            Crossing(number, row, sign, arc[row[1]], arc[row[0]], arc[row[2]])
+            for number, (row, sign) in enumerate(zip(self.slots, self.signs, strict=True), start=1)
+        )
+
+    @cached_property
+    def arcs(self) -> tuple[Arc, ...]:
+        """The arcs, component by component; the first of a component holds its base edge."""
+        owners = [
+            (component, edges) for component, arcs in enumerate(self._arc_edges, start=1) for edges in arcs
+        ]
+        return tuple(Arc(number, *owned) for number, owned in enumerate(owners, start=1))
+
+    @cached_property
+    def components(self) -> tuple[Component, ...]:
+        """The components, by base edge; crossingless ones last."""
+        spans: list[tuple[int, ...]] = [tuple(range(first, last + 1)) for first, last in self._spans]
+        spans += [()] * self.circles
+        components = []
+        arc = 1
+        for number, (edges, arcs) in enumerate(zip(spans, self._arc_edges, strict=True), start=1):
+            components.append(Component(number, edges, tuple(range(arc, arc + len(arcs)))))
+            arc += len(arcs)
+        return tuple(components)
+
+    @cached_property
+    def faces(self) -> tuple[Face, ...]:
+        """The faces of the connected pieces, each on its own sphere; circles have none here."""
+        tails = self._ends[0]
+        edge_of_dart = [label for row in self.slots for label in row]
+        return tuple(
+            Face(
+                number,
+                tuple((edge_of_dart[dart], 1 if tails[edge_of_dart[dart]] == dart else -1) for dart in walk),
+            )
+            for number, walk in enumerate(self.planar_map.faces, start=1)
+        )
+
+    @cached_property
+    def pieces(self) -> tuple[tuple[int, ...], ...]:
+        """The components of each connected piece of the diagram; each crossingless component is a piece."""
+        component = self._component_of_edge
+        found = []
+        for crossings in self.planar_map.pieces:
+            found.append(tuple(sorted({component[label] for c in crossings for label in self.slots[c]})))
+        knotted = len(self._spans)
+        return (*found, *((knotted + circle,) for circle in range(1, self.circles + 1)))
+
+    @cached_property
+    def _component_of_edge(self) -> tuple[int, ...]:
+        owner = [0]
+        for number, (first, last) in enumerate(self._spans, start=1):
+            owner += [number] * (last - first + 1)
+        return tuple(owner)
+
+    @property
+    def writhe(self) -> int:
+        """The sum of the signs of all crossings."""
+        return sum(self.signs)
+
+    def linking_matrix(self) -> tuple[tuple[int, ...], ...]:
+        """The linking numbers of the components; the diagonal is 0.
+
+        Examples
+        --------
+        >>> Diagram.from_braid([1, 1]).linking_matrix()
+        ((0, 1), (1, 0))
+        """
+        size = len(self._spans) + self.circles
+        twice = [[0] * size for _ in range(size)]
+        component = self._component_of_edge
+        for (under, over, _, _), sign in zip(self.slots, self.signs, strict=True):
+            one, other = component[under] - 1, component[over] - 1
+            if one != other:
+                twice[one][other] += sign
+                twice[other][one] += sign
+        return tuple(tuple(entry // 2 for entry in row) for row in twice)
+
+    def mirror(self) -> Diagram:
+        """The mirror image in the plane of the diagram: every crossing switched, edges labelled as before.
+
+        Examples
+        --------
+        >>> Diagram.from_braid([1, 1, 1]).mirror() == Diagram.from_braid([-1, -1, -1])
+        True
+        """
+        slots = tuple(
+            (left, under_in, right, under_out) if sign > 0 else (right, under_out, left, under_in)
+            for (under_in, right, under_out, left), sign in zip(self.slots, self.signs, strict=True)
+        )
+        return Diagram._trusted((slots, tuple(-sign for sign in self.signs), self.circles))
+
+    def reverse(self) -> Diagram:
+        """The diagram with every component reversed; the base edges stay.
+
+        Examples
+        --------
+        >>> d = Diagram.from_braid([1, 1, 1])
+        >>> d.reverse().reverse() == d, d.reverse().writhe
+        (True, 3)
+        """
+        relabelled = [0] * (2 * len(self.slots) + 1)
+        for first, last in self._spans:
+            relabelled[first] = first
+            for edge in range(first + 1, last + 1):
+                relabelled[edge] = first + last + 1 - edge
+        slots = tuple(
+            (relabelled[under_out], relabelled[left], relabelled[under_in], relabelled[right])
+            for under_in, right, under_out, left in self.slots
+        )
+        return Diagram._trusted((slots, self.signs, self.circles))
+
+
+def _counted(number: int, what: str) -> str:
+    return f"{number} {what}{'' if number == 1 else 's'}"

@@ -1,0 +1,115 @@
+"""The checks that all notations share: whole numbers, signs, sizes, and that a code is planar."""
+
+from __future__ import annotations
+
+import operator
+from collections.abc import Iterable, Sequence
+
+from kt_widgets.diagrams.planar_map import Code, PlanarMap, Slots, ends_of_edges
+from kt_widgets.errors import DiagramError, LimitError
+
+__all__ = [
+    "MAX_CIRCLES",
+    "MAX_CROSSINGS",
+    "check_not_empty",
+    "check_planar",
+    "circle_count",
+    "items",
+    "listed",
+    "sign_list",
+    "size",
+    "whole",
+]
+
+MAX_CROSSINGS = 100_000
+"""A diagram has at most this many crossings."""
+
+MAX_CIRCLES = 10_000
+"""A diagram has at most this many crossingless components, a braid at most this many strands."""
+
+
+def whole(value: object, where: str) -> int:
+    """The value as an int; floats, bools and strings are refused."""
+    if type(value) is int:
+        return value
+    if not isinstance(value, bool):
+        try:
+            return operator.index(value)  # type: ignore[arg-type]
+        except TypeError:
+            pass
+    raise DiagramError(
+        f"{value!r} is not a whole number", where=where, accepted="whole numbers such as 3 or -2"
+    )
+
+
+def items(values: object, what: str, accepted: str) -> list[object]:
+    """The entries of a list-like value, refused at once beyond the size limit."""
+    if isinstance(values, (str, bytes, dict, set, frozenset)) or not isinstance(values, Iterable):
+        raise DiagramError(f"{what} is a {type(values).__name__}, not a list", where=what, accepted=accepted)
+    if isinstance(values, Sequence):
+        size(len(values), 2 * MAX_CROSSINGS, f"entries in {what}")
+    return list(values)
+
+
+def size(count: int, most: int, what: str) -> None:
+    """Refuse a size beyond its limit."""
+    if count > most:
+        raise LimitError(
+            f"{count} {what} are too many", where="size of the input", accepted=f"at most {most}"
+        )
+
+
+def circle_count(value: object) -> int:
+    """A number of crossingless components."""
+    circles = whole(value, "circles")
+    if circles < 0:
+        raise DiagramError(f"{circles} crossingless components", where="circles", accepted="0 or more")
+    size(circles, MAX_CIRCLES, "crossingless components")
+    return circles
+
+
+def sign_list(signs: object, crossings: int) -> tuple[int, ...]:
+    """The signs of crossings 1, 2, ..., each +1 or -1."""
+    read = []
+    for number, value in enumerate(items(signs, "the signs", "a list of +1 and -1"), start=1):
+        sign = whole(value, f"sign {number}")
+        if sign not in (1, -1):
+            raise DiagramError(f"{sign} is not a sign", where=f"sign {number}", accepted="+1 or -1")
+        read.append(sign)
+    if len(read) != crossings:
+        raise DiagramError(
+            f"{len(read)} signs for {crossings} crossings",
+            where="signs",
+            accepted="one sign for each crossing",
+        )
+    return tuple(read)
+
+
+def check_planar(slots: Sequence[Slots], signs: Sequence[int]) -> None:
+    """Refuse a code whose map is not planar, by Euler's formula for each connected piece."""
+    plane = PlanarMap.from_ends(*ends_of_edges(slots, signs))
+    for piece, genus in zip(plane.pieces, plane.genera, strict=True):
+        if genus:
+            raise DiagramError(
+                f"not planar: the connected piece with crossings {listed(c + 1 for c in piece)} "
+                f"fills a closed surface of genus {genus}",
+                where=f"crossing {piece[0] + 1}",
+                accepted="a code whose every piece of n crossings has n + 2 faces",
+            )
+
+
+def check_not_empty(code: Code) -> Code:
+    """Refuse the diagram without components."""
+    slots, _, circles = code
+    if not slots and not circles:
+        raise DiagramError(
+            "a diagram needs at least one component", where="the code", accepted="a crossing or a circle"
+        )
+    return code
+
+
+def listed(values: Iterable[int], most: int = 8) -> str:
+    """Numbers for a message, a long tail cut."""
+    shown = list(values)
+    tail = f", ... ({len(shown)} in all)" if len(shown) > most else ""
+    return ", ".join(map(str, shown[:most])) + tail
