@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
-from kt_widgets.algebra.laurent import LaurentPolynomial, subtract_product
+from kt_widgets.algebra.flint_rings import RingName
+from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
-from kt_widgets.algebra.sparse import Pivot, Row, eliminate_units
+from kt_widgets.algebra.sparse import Pivot, Row, eliminate_units, subtract_line
 from kt_widgets.errors import AlgebraError, CertificateError
 
-__all__ = ["Elimination", "Transforms", "check_equal", "eliminate"]
+__all__ = ["Elimination", "Operations", "Transforms", "check_equal", "eliminate"]
 
 
 def check_equal(left: LaurentMatrix, right: LaurentMatrix, name: str) -> None:
@@ -74,6 +76,28 @@ class Transforms:
             self.right_inverse @ other.right_inverse,
         )
 
+    def after(self, size: int) -> Transforms:
+        """These beside an identity block of this size that comes first."""
+        one = LaurentMatrix.identity(size, self.left.over)
+        blocks = LaurentMatrix.blocks
+        return Transforms(
+            blocks(one, self.left),
+            blocks(one, self.left_inverse),
+            blocks(one, self.right),
+            blocks(one, self.right_inverse),
+        )
+
+    def before(self, rows: int, columns: int) -> Transforms:
+        """These with identity blocks behind: of size `rows` on the left side, `columns` on the right side."""
+        left, right = (LaurentMatrix.identity(k, self.left.over) for k in (rows, columns))
+        blocks = LaurentMatrix.blocks
+        return Transforms(
+            blocks(self.left, left),
+            blocks(self.left_inverse, left),
+            blocks(self.right, right),
+            blocks(self.right_inverse, right),
+        )
+
     def verify(
         self, source: LaurentMatrix, target: LaurentMatrix, names: tuple[str, str, str] = ("L", "A", "R")
     ) -> bool:
@@ -99,6 +123,48 @@ class Transforms:
         except AlgebraError as error:
             raise CertificateError(f"the matrices do not multiply: {error.what}", where=str(names)) from None
         return True
+
+
+class Operations:
+    """Row and column operations added up as invertible matrices and their inverses, line by line."""
+
+    __slots__ = ("_left", "_left_inverse", "_over", "_right", "_right_inverse")
+
+    def __init__(self, shape: tuple[int, int], over: RingName) -> None:
+        one = LaurentPolynomial.constant(1, over)
+        self._over = over
+        self._left: list[Row] = [{i: one} for i in range(shape[0])]  # rows of L
+        self._left_inverse: list[Row] = [{i: one} for i in range(shape[0])]  # columns of its inverse
+        self._right: list[Row] = [{j: one} for j in range(shape[1])]  # columns of R
+        self._right_inverse: list[Row] = [{j: one} for j in range(shape[1])]  # rows of its inverse
+
+    def subtract_row(self, i: int, factor: LaurentPolynomial, other: int) -> None:
+        """Row i loses factor times the other row."""
+        subtract_line(self._left[i], factor, self._left[other])
+        subtract_line(self._left_inverse[other], -factor, self._left_inverse[i])
+
+    def subtract_column(self, j: int, factor: LaurentPolynomial, other: int) -> None:
+        """Column j loses factor times the other column."""
+        subtract_line(self._right[j], factor, self._right[other])
+        subtract_line(self._right_inverse[other], -factor, self._right_inverse[j])
+
+    def scale_row(self, i: int, unit: LaurentPolynomial) -> None:
+        """Row i is multiplied by a unit."""
+        inverse = unit.inverse()
+        self._left[i] = {j: f * unit for j, f in self._left[i].items()}
+        self._left_inverse[i] = {j: f * inverse for j, f in self._left_inverse[i].items()}
+
+    def transforms(self, row_order: Sequence[int], column_order: Sequence[int]) -> Transforms:
+        """The matrices, after rows and columns are put in these orders."""
+        return Transforms(
+            self._square(self._left, row_order),
+            self._square(self._left_inverse, row_order).transpose(),
+            self._square(self._right, column_order).transpose(),
+            self._square(self._right_inverse, column_order),
+        )
+
+    def _square(self, lines: list[Row], order: Sequence[int]) -> LaurentMatrix:
+        return LaurentMatrix._trusted((dict(lines[i]) for i in order), self._over, (len(order), len(order)))
 
 
 @dataclass(frozen=True)
@@ -136,53 +202,22 @@ class Elimination:
 
     def transforms(self) -> Transforms:
         """P, Q and their inverses with ``P A Q = diag(1, ..., 1, core)``, made from the log."""
-        height, width = self.matrix.shape
-        over = self.matrix.over
-        one = LaurentPolynomial.constant(1, over)
-        left: list[Row] = [{i: one} for i in range(height)]  # rows of P
-        left_inverse: list[Row] = [{i: one} for i in range(height)]  # columns of its inverse
-        right: list[Row] = [{j: one} for j in range(width)]  # columns of Q
-        right_inverse: list[Row] = [{j: one} for j in range(width)]  # rows of its inverse
+        operations = Operations(self.matrix.shape, self.matrix.over)
         for pivot in self.pivots:
-            for k, factor in pivot.below:
-                _subtract(left[k], factor, left[pivot.row])
-                _subtract(left_inverse[pivot.row], -factor, left_inverse[k])
             inverse = pivot.unit.inverse()
+            for k, factor in pivot.below:
+                operations.subtract_row(k, factor, pivot.row)
             for c, value in pivot.beside.items():
-                factor = value * inverse
-                _subtract(right[c], factor, right[pivot.column])
-                _subtract(right_inverse[pivot.column], -factor, right_inverse[c])
-            left[pivot.row] = {j: f * inverse for j, f in left[pivot.row].items()}
-            left_inverse[pivot.row] = {j: f * pivot.unit for j, f in left_inverse[pivot.row].items()}
-        row_order = [p.row for p in self.pivots] + list(self.core_rows)
-        column_order = [p.column for p in self.pivots] + list(self.core_columns)
-
-        def square(lines: list[Row], order: list[int]) -> LaurentMatrix:
-            return LaurentMatrix._trusted((lines[i] for i in order), over, (len(order), len(order)))
-
-        return Transforms(
-            square(left, row_order),
-            square(left_inverse, row_order).transpose(),
-            square(right, column_order).transpose(),
-            square(right_inverse, column_order),
+                operations.subtract_column(c, value * inverse, pivot.column)
+            operations.scale_row(pivot.row, inverse)
+        return operations.transforms(
+            [p.row for p in self.pivots] + list(self.core_rows),
+            [p.column for p in self.pivots] + list(self.core_columns),
         )
 
     def verify(self) -> bool:
         """Check the transforms by multiplication; `CertificateError` names a wrong entry."""
         return self.transforms().verify(self.matrix, self.result, ("P", "A", "Q"))
-
-
-def _subtract(row: Row, factor: LaurentPolynomial, other: Row) -> None:
-    for j, value in other.items():
-        old = row.get(j)
-        if old is None:
-            row[j] = -(factor * value)
-        else:
-            new = subtract_product(old, factor, value)
-            if new:
-                row[j] = new
-            else:
-                del row[j]
 
 
 def eliminate(matrix: LaurentMatrix) -> Elimination:

@@ -387,6 +387,21 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         """
         return _made(0, self._poly.gcd(self._coerced(other)._poly), self._ring)
 
+    def inverse_modulo(self, modulus: LaurentPolynomial) -> LaurentPolynomial | None:
+        """Over a field: the g with ``self * g == 1`` modulo another polynomial; None if they share a factor.
+
+        Examples
+        --------
+        >>> f, g = (LaurentPolynomial.parse(text, "Q") for text in ("t - 1", "1 - t + t^2"))
+        >>> f.inverse_modulo(g), f.inverse_modulo(f * g)
+        (LaurentPolynomial('t', over='Q'), None)
+        """
+        modulus = self._divisor(modulus)
+        divisor, factor, _ = (self._poly % modulus._poly).xgcd(modulus._poly)
+        if len(divisor) != 1:
+            return None
+        return _trimmed(-self._low, factor, self._ring)
+
     def is_unit(self) -> bool:
         """Whether it has an inverse: +-t^k over Z, c t^k with c nonzero over a field."""
         poly = self._poly
