@@ -12,7 +12,7 @@ from kt_widgets.errors import DiagramError
 
 __all__ = ["MAX_DOWKER_CROSSINGS", "dowker_code", "dowker_of", "dowker_text"]
 
-MAX_DOWKER_CROSSINGS = 5_000
+MAX_DOWKER_CROSSINGS = 2_000
 """A Dowker-Thistlethwaite code has at most this many crossings: each is realised by a planarity test."""
 
 ACCEPTED = (

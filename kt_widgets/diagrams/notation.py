@@ -8,10 +8,13 @@ from dataclasses import dataclass, field
 
 from kt_widgets.errors import LimitError, ParseError
 
-__all__ = ["MAX_TEXT", "NOTATIONS", "Line", "read_line"]
+__all__ = ["MAX_DIGITS", "MAX_TEXT", "NOTATIONS", "Line", "read_line"]
 
 MAX_TEXT = 5_000_000
 """A line has at most this many characters."""
+
+MAX_DIGITS = 12
+"""A number in a line has at most this many digits."""
 
 NOTATIONS = {
     "braid": "braid 1 -2 1 -2",
@@ -88,30 +91,32 @@ def _read_body(text: str, notation: str, tokens: list[tuple[str, str, int]]) -> 
     target = line.groups[0]
     option = ""
     for kind, word, at in tokens:
-        where = _position(text, at)
-        if kind == "number" and len(word) > 20:
-            raise ParseError(f"a number of {len(word)} digits", where=where, accepted="at most 20 digits")
+        problem, accepted = "", NOTATIONS[notation]
         if kind == "number":
-            target.append(int(word))
+            if len(word) > MAX_DIGITS:
+                problem, accepted = f"a number of {len(word)} digits", f"at most {MAX_DIGITS} digits"
+            else:
+                target.append(int(word))
         elif kind == "sign" and option == "signs":
             target.append(1 if word == "+" else -1)
         elif kind == "name":
             option = word.lower()
-            accepted = _OPTIONS[notation]
-            if option not in accepted:
-                raise ParseError(
-                    f"{word!r} is not known after {notation}", where=where, accepted=" or ".join(accepted)
-                )
-            if option in line.options:
-                raise ParseError(f"{option} is given twice", where=where, accepted=f"{option} once")
-            target = line.options.setdefault(option, [])
+            if option not in _OPTIONS[notation]:
+                problem, accepted = f"{word!r} is not known after {notation}", " or ".join(_OPTIONS[notation])
+            elif option in line.options:
+                problem, accepted = f"{option} is given twice", f"{option} once"
+            else:
+                target = line.options.setdefault(option, [])
         elif word == separator and not option:
-            if not target:
-                raise ParseError(f"nothing stands before {word!r}", where=where, accepted=NOTATIONS[notation])
-            target = []
-            line.groups.append(target)
+            if target:
+                target = []
+                line.groups.append(target)
+            else:
+                problem = f"nothing stands before {word!r}"
         elif word != ",":
-            raise ParseError(f"{word!r} is out of place", where=where, accepted=NOTATIONS[notation])
+            problem = f"{word!r} is out of place"
+        if problem:
+            raise ParseError(problem, where=_position(text, at), accepted=accepted)
     _check_complete(text, line)
     return line
 
