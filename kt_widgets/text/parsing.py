@@ -544,10 +544,10 @@ def parse_matrix(text: str) -> list[list[Terms]]:
     """
     example = "a matrix such as [[1, t], [0, 1 - t]]"
     inner = text.strip()
-    if not inner.startswith("[") and "\\begin" not in inner:
+    if inner and not inner.startswith("[") and "\\begin" not in inner:
         # A new line sets off rows; positions stay what they are.
-        start = len(text) - len(text.lstrip())
-        rows = text[:start] + inner.replace("\n", ";")
+        before, _, after = text.partition(inner)
+        rows = before + inner.replace("\n", ";") + after
     else:
         rows = text
     tree = _tree(rows, "matrix", _THE_VARIABLE, example)
