@@ -2,6 +2,6 @@ from .cover_figure import cover
 from .diagram_figure import diagram
 from .dossier import dossier
 from .drawing import Drawing
-from .explain import explain
+from .explain_figure import explain
 
 __all__ = ["Drawing", "cover", "diagram", "dossier", "explain"]

@@ -1,4 +1,4 @@
-"""The figure of an infinite cyclic cover: the strip of lifted edges, with boundaries of 2-cells traced on it."""
+"""The figure of an infinite cyclic cover: the strip of lifted edges, and boundaries of 2-cells traced there."""
 
 from __future__ import annotations
 
@@ -277,9 +277,7 @@ def _trace(strip: _Strip, relator: int, visits: Sequence[Visit]) -> list[Item]:
         _turn(lane, lanes[(i + 1) % len(lanes)], strip.vertex(visits[i].end)) for i, lane in enumerate(lanes)
     ]
     outline = [point for lane, turn in zip(lanes, turns, strict=True) for point in (*lane, *turn[1:-1])]
-    items: list[Item] = [
-        Region(str(Place("cell", (relator, visits[0].cell.indices[1]))), tuple(outline), "cell", z=-1)
-    ]
+    items: list[Item] = [Region(str(visits[0].cell), tuple(outline), "cell", z=-1)]
     for i, (visit, lane) in enumerate(zip(visits, lanes, strict=True)):
         name = str(visit.letter)
         text = str(visit.position)
