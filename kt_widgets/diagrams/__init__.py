@@ -2,6 +2,6 @@
 
 from __future__ import annotations
 
-from kt_widgets.diagrams.diagram import Arc, Component, Crossing, Diagram, Face
+from kt_widgets.diagrams.diagram import Arc, Component, Crossing, Diagram, Face, Relabelling
 
-__all__ = ["Arc", "Component", "Crossing", "Diagram", "Face"]
+__all__ = ["Arc", "Component", "Crossing", "Diagram", "Face", "Relabelling"]

@@ -5,18 +5,26 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
 from functools import cached_property
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from kt_widgets.diagrams.braid import braid_code, braid_text
 from kt_widgets.diagrams.dowker import dowker_code, dowker_of, dowker_text
-from kt_widgets.diagrams.entries import circle_count, items
+from kt_widgets.diagrams.entries import circle_count, items, whole
 from kt_widgets.diagrams.gauss import gauss_code, gauss_of, gauss_text
 from kt_widgets.diagrams.notation import read_line
 from kt_widgets.diagrams.planar_diagram import planar_code, planar_text
 from kt_widgets.diagrams.planar_map import Code, PlanarMap, Slots, ends_of_edges
+from kt_widgets.diagrams.wirtinger import arc_names, longitude, wirtinger
+from kt_widgets.errors import DiagramError
+from kt_widgets.groups.presentations import Presentation
+from kt_widgets.groups.words import Word
 from kt_widgets.text.portable import Portable
 
-__all__ = ["Arc", "Component", "Crossing", "Diagram", "Face"]
+if TYPE_CHECKING:
+    from kt_widgets.algebra.laurent import LaurentPolynomial
+    from kt_widgets.covers.cover import Cover
+
+__all__ = ["Arc", "Component", "Crossing", "Diagram", "Face", "Relabelling"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,6 +76,14 @@ class Face:
         return tuple(edge for edge, _ in self.boundary)
 
 
+@dataclass(frozen=True, slots=True)
+class Relabelling:
+    """Where crossings 1, 2, ... and edges 1, 2, ... of one diagram go in another."""
+
+    crossings: tuple[int, ...]
+    edges: tuple[int, ...]
+
+
 @dataclass(frozen=True, init=False, repr=False)
 class Diagram(Portable, kind="diagram"):
     """An oriented link diagram.
@@ -99,6 +115,8 @@ class Diagram(Portable, kind="diagram"):
     Diagram(4 crossings, 1 component, 'braid 1 -2 1 -2')
     >>> print(d)
     planar 4,2,5,1; 2,7,3,8; 8,6,1,5; 6,3,7,4
+    >>> print(d.alexander_polynomial())
+    -t^-1 + 3 - t
     """
 
     slots: tuple[Slots, ...]
@@ -403,6 +421,119 @@ class Diagram(Portable, kind="diagram"):
                 twice[other][one] += sign
         return tuple(tuple(entry // 2 for entry in row) for row in twice)
 
+    # the group and its cover
+
+    @cached_property
+    def _names(self) -> tuple[str, ...]:
+        return arc_names(sum(map(len, self._arc_edges)))
+
+    def _component(self, number: int) -> tuple[int, int]:
+        """The arcs of a component as a range of indices, for a number from 1."""
+        count = len(self._arc_edges)
+        if not 1 <= whole(number, "component") <= count:
+            raise DiagramError(
+                f"there is no component {number}", where="component", accepted=f"a number from 1 to {count}"
+            )
+        first = sum(map(len, self._arc_edges[: number - 1]))
+        return first, first + len(self._arc_edges[number - 1])
+
+    def meridian(self, component: int = 1) -> Word:
+        """The meridian of a component at its base edge: the generator of the arc there.
+
+        Raises
+        ------
+        DiagramError
+            If there is no such component.
+
+        Examples
+        --------
+        >>> Diagram.from_braid([1, 1]).meridian(2)
+        Word('b')
+        """
+        return Word(((self._names[self._component(component)[0]], 1),))
+
+    def longitude(self, component: int = 1) -> Word:
+        """The longitude of a component at its base edge, with linking number 0 with it, as a literal word.
+
+        It commutes with the meridian in the group of the link.
+
+        Raises
+        ------
+        DiagramError
+            If there is no such component.
+
+        Examples
+        --------
+        >>> d = Diagram.from_braid([1, 1, 1])
+        >>> print(d.longitude())
+        c a b a^-3
+        """
+        first, last = self._component(component)
+        names, arc, heads = self._names, self.arc_of_edge, self._ends[1]
+        edges = self.components[component - 1].edges
+        passes = [
+            (names[arc[self.slots[heads[edge] // 4][1]] - 1], self.signs[heads[edge] // 4])
+            for edge in edges
+            if heads[edge] % 4 == 0
+        ]
+        return longitude(passes, names[first], frozenset(names[first:last]))
+
+    @cached_property
+    def _wirtinger(self) -> Presentation:
+        marks = {}
+        for number in range(1, len(self._arc_edges) + 1):
+            marks[f"meridian:{number}"] = self.meridian(number)
+            marks[f"longitude:{number}"] = self.longitude(number)
+        return wirtinger(self.slots, self.signs, self.arc_of_edge, self._names, marks)
+
+    def wirtinger(self) -> Presentation:
+        """Wirtinger's presentation of the group: a generator per arc, a relator per crossing, none dropped.
+
+        Generators are a, b, c, ... in the order of the arcs (a1, a2, ... beyond 19 arcs). With the
+        under-strand entering as b and leaving as c under the arc a the relator is c a^-1 b^-1 a at a positive
+        crossing and c a b^-1 a^-1 at a negative one. Meridians and longitudes are its marks.
+
+        Examples
+        --------
+        >>> print(Diagram.from_braid([1, 1, 1]).wirtinger())
+        < a, b, c | c a^-1 b^-1 a, b c^-1 a^-1 c, a b^-1 c^-1 b >
+        """
+        return self._wirtinger
+
+    @cached_property
+    def _cover(self) -> Cover:
+        from kt_widgets.covers.cover import Cover
+
+        return Cover(self._wirtinger)
+
+    def cover(self) -> Cover:
+        """The infinite cyclic cover of the Wirtinger presentation's complex, all meridians to t.
+
+        Examples
+        --------
+        >>> Diagram.from_braid([1, -2, 1, -2]).cover().alexander_ideal(1)
+        Ideal(['1 - 3t + t^2'])
+        """
+        return self._cover
+
+    def alexander_polynomial(self) -> LaurentPolynomial:
+        """The Alexander polynomial, of all meridians to t.
+
+        For a knot it is normalised so that Delta(t) = Delta(1/t) and Delta(1) = 1. For a link it is defined
+        up to units and has lowest exponent 0 and positive leading coefficient; 0 if the diagram is split.
+
+        Examples
+        --------
+        >>> print(Diagram.from_braid([1, -2, 1, -2]).alexander_polynomial())
+        -t^-1 + 3 - t
+        >>> print(Diagram.from_braid([1, 1]).alexander_polynomial())
+        -1 + t
+        """
+        order = self._cover.order()
+        return order.symmetric_form() if len(self._arc_edges) == 1 else order
+
+    # new diagrams
+
     def mirror(self) -> Diagram:
         """The mirror image in the plane of the diagram: every crossing switched, edges labelled as before.
 
@@ -436,6 +567,76 @@ class Diagram(Portable, kind="diagram"):
             for under_in, right, under_out, left in self.slots
         )
         return Diagram._trusted((slots, self.signs, self.circles))
+
+    def same_diagram(self, other: Diagram) -> Relabelling | None:
+        """A relabelling that turns this diagram into the other one on the sphere; None if there is none.
+
+        It keeps orientations, crossings and the order round them: mirror images and reversed diagrams
+        count as different unless they happen to agree.
+
+        Examples
+        --------
+        >>> trefoil = Diagram.from_braid([1, 1, 1])
+        >>> trefoil.same_diagram(Diagram.from_dowker([4, 6, 2])).crossings
+        (1, 3, 2)
+        >>> trefoil.same_diagram(trefoil.mirror()) is None
+        True
+        """
+        if (len(self.slots), self.circles, self.writhe) != (len(other.slots), other.circles, other.writhe):
+            return None
+        image: dict[int, int] = {}
+        taken: set[int] = set()
+        for piece in self.planar_map.pieces:
+            found = _piece_image(self, other, piece, taken)
+            if found is None:
+                return None
+            image.update(found)
+            taken.update(found.values())
+        edges = [0] * (2 * len(self.slots))
+        for crossing, target in image.items():
+            for ours, theirs in zip(self.slots[crossing], other.slots[target], strict=True):
+                edges[ours - 1] = theirs
+        return Relabelling(tuple(image[c] + 1 for c in range(len(self.slots))), tuple(edges))
+
+
+def _piece_image(
+    ours: Diagram, theirs: Diagram, piece: Sequence[int], taken: set[int]
+) -> dict[int, int] | None:
+    """An image of a connected piece in the other diagram away from the crossings taken, if there is one."""
+    # pieces are alike or not, so that the first image that fits never has to be taken back
+    targets = (
+        target
+        for theirs_piece in theirs.planar_map.pieces
+        if len(theirs_piece) == len(piece)
+        for target in theirs_piece
+        if target not in taken
+    )
+    for target in targets:
+        found = _follow(ours, theirs, piece[0], target)
+        if found is not None:
+            return found
+    return None
+
+
+def _follow(ours: Diagram, theirs: Diagram, start: int, target: int) -> dict[int, int] | None:
+    """The map of a connected piece that sends one crossing to another, slot by slot, if there is one."""
+    mate, their_mate = ours.planar_map.mate, theirs.planar_map.mate
+    image = {start: target}
+    queue = [start]
+    for crossing in queue:
+        there = image[crossing]
+        if ours.signs[crossing] != theirs.signs[there]:
+            return None
+        for slot in range(4):
+            end, their_end = mate[4 * crossing + slot], their_mate[4 * there + slot]
+            if end % 4 != their_end % 4:
+                return None
+            if end // 4 not in image:
+                image[end // 4] = their_end // 4
+                queue.append(end // 4)
+            elif image[end // 4] != their_end // 4:
+                return None
+    return image
 
 
 def _counted(number: int, what: str) -> str:
