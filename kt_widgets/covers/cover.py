@@ -19,6 +19,7 @@ from kt_widgets.groups.presentations import Presentation
 from kt_widgets.groups.words import Word
 from kt_widgets.places import Place
 from kt_widgets.text.portable import Portable
+from kt_widgets.text.printing import MAX_LATEX_ENTRIES
 
 __all__ = ["MAX_WEIGHT", "MAX_WINDOW", "Cover"]
 
@@ -218,8 +219,8 @@ class Cover(Portable, kind="cover"):
         )
         return f"{self.presentation.latex()}, \\quad {weights}"
 
-    def _repr_latex_(self) -> str:
-        return f"${self.latex()}$"
+    def _repr_latex_(self) -> str | None:
+        return f"${self.latex()}$" if self.presentation.size() <= MAX_LATEX_ENTRIES else None
 
     def to_data(self) -> dict[str, Any]:
         """The presentation and the weights by generator."""

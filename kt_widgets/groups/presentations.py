@@ -14,7 +14,7 @@ from kt_widgets.groups.words import Word, check_name
 from kt_widgets.places import Place
 from kt_widgets.text.parsing import parse_presentation
 from kt_widgets.text.portable import Portable
-from kt_widgets.text.printing import Style, presentation_text
+from kt_widgets.text.printing import MAX_LATEX_ENTRIES, Style, presentation_text
 
 __all__ = ["MAX_GENERATORS", "MAX_GROWTH", "Presentation", "Simplification", "Step"]
 
@@ -282,12 +282,22 @@ class Presentation(Portable, kind="presentation"):
         return self.text()
 
     def __repr__(self) -> str:
-        if len(self.generators) + sum(map(len, self.boundary_words)) <= 40:
+        if self.size() <= 40:
             return f"Presentation({str(self)!r})"
         return f"Presentation({len(self.generators)} generators, {len(self.boundary_words)} relators)"
 
-    def _repr_latex_(self) -> str:
-        return f"${self.latex()}$"
+    def size(self) -> int:
+        """The number of generators and of letters of the relators, as written.
+
+        Examples
+        --------
+        >>> Presentation.parse("< a, b | a b a = b a b >").size()
+        8
+        """
+        return len(self.generators) + sum(map(len, self.boundary_words))
+
+    def _repr_latex_(self) -> str | None:
+        return f"${self.latex()}$" if self.size() <= MAX_LATEX_ENTRIES else None
 
     def to_data(self) -> dict[str, Any]:
         """Generators, relators as lists of [name, sign], places as texts, marks."""
@@ -351,6 +361,8 @@ class Simplification:
 
 
 def _check_letters(word: Word, known: frozenset[str], where: str) -> None:
+    if not isinstance(word, Word):
+        raise AlgebraError(f"{word!r} is no Word", where=where, accepted='Word.parse("a b^-1")')
     for position, (name, _) in enumerate(word, 1):
         if name not in known:
             accepted = ", ".join(sorted(known)[:30]) or "no letters: there are no generators"

@@ -12,7 +12,7 @@ from typing import Any
 from kt_widgets.errors import AlgebraError, LimitError, ParseError
 from kt_widgets.text.parsing import MAX_LETTERS, parse_word
 from kt_widgets.text.portable import Portable
-from kt_widgets.text.printing import Style, word_text
+from kt_widgets.text.printing import MAX_LATEX_ENTRIES, Style, word_text
 
 __all__ = ["Letter", "Word", "check_name"]
 
@@ -200,8 +200,8 @@ class Word(Portable, kind="word"):
         text = str(self) if len(self) <= 40 else f"{word_text(self.letters[:20])} ... ({len(self)} letters)"
         return f"Word({text!r})"
 
-    def _repr_latex_(self) -> str:
-        return f"${self.latex()}$"
+    def _repr_latex_(self) -> str | None:
+        return f"${self.latex()}$" if len(self) <= MAX_LATEX_ENTRIES else None
 
     def to_data(self) -> dict[str, Any]:
         """``{"letters": [[name, sign], ...]}``."""

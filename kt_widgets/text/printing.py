@@ -24,7 +24,7 @@ __all__ = [
 Style = Literal["plain", "unicode", "latex"]
 
 MAX_LATEX_ENTRIES = 400
-"""Matrices with more entries stall a page when typeset: show them as text."""
+"""Matrices with more entries, and words with more letters, stall a page when typeset: show them as text."""
 
 # amsmath's pmatrix stops at ten columns; an array has no such bound.
 _PMATRIX_COLUMNS = 10

@@ -177,6 +177,7 @@ def test_relators_that_do_not_exist(relator):
         (["a", "a"],),
         (["x1", "x_1"],),
         (["a"], [Word.parse("b")]),
+        (["a"], ["a"]),
         (["a"], [], {"relator:1": Place("crossing", (1,))}),
         (["a"], [], {}, {"meridian": Word.parse("b")}),
     ],

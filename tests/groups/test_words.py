@@ -97,6 +97,11 @@ def test_letters_are_checked(letters):
     assert caught.value.accepted
 
 
+def test_long_words_are_not_typeset():
+    assert Word.parse("a^400")._repr_latex_() == "$a^{400}$"
+    assert Word.parse("a^401")._repr_latex_() is None
+
+
 def test_limits_and_missing_weights():
     long = Word.parse("a^1000 b")
     with pytest.raises(LimitError):
