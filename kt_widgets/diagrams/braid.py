@@ -2,19 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-
 from kt_widgets.diagrams.entries import MAX_CIRCLES, MAX_CROSSINGS, items, size, whole
 from kt_widgets.diagrams.planar_map import Code, Slots
 from kt_widgets.errors import DiagramError
 
-__all__ = ["braid_code", "braid_text"]
+__all__ = ["read_braid"]
 
 ACCEPTED = "non-zero whole numbers, +i or -i for the crossing of strands i and i + 1"
 
 
-def braid_code(word: object, strands: object = None) -> Code:
-    """The closure of a braid: its crossings in the order of the letters.
+def read_braid(word: object, strands: object = None) -> tuple[Code, str]:
+    """The closure of a braid, and the line it is written in: its crossings in the order of the letters.
 
     Strands run upwards and letter +i is a positive crossing of strands i and i + 1: the strand that comes
     from the left passes over. The components are numbered by their lowest strand at the bottom, where their
@@ -22,32 +20,20 @@ def braid_code(word: object, strands: object = None) -> Code:
 
     Examples
     --------
-    >>> braid_code([1, 1, 1])
-    (((4, 2, 5, 1), (2, 6, 3, 5), (6, 4, 1, 3)), (1, 1, 1), 0)
-    >>> braid_code([], strands=2)
-    ((), (), 2)
+    >>> read_braid([1, 1, 1])
+    ((((4, 2, 5, 1), (2, 6, 3, 5), (6, 4, 1, 3)), (1, 1, 1), 0), 'braid 1 1 1')
+    >>> read_braid([], strands=2)
+    (((), (), 2), 'braid strands 2')
     """
-    letters = items(word, "the braid word", ACCEPTED)
-    size(len(letters), MAX_CROSSINGS, "letters")
     read = []
-    for number, value in enumerate(letters, start=1):
+    for number, value in enumerate(items(word, "the braid word", ACCEPTED, MAX_CROSSINGS), start=1):
         letter = whole(value, f"letter {number}")
         if not letter:
             raise DiagramError("0 is not a letter of a braid", where=f"letter {number}", accepted=ACCEPTED)
         read.append(letter)
-    return closure(read, _width(read, strands))
-
-
-def braid_text(word: Sequence[object], strands: object = None) -> str:
-    """The line of a braid word; strands are named where the letters do not tell them.
-
-    Examples
-    --------
-    >>> braid_text([1, -2]), braid_text([1], 3)
-    ('braid 1 -2', 'braid 1 strands 3')
-    """
-    line = " ".join(["braid", *map(str, word)])
-    return line if strands is None else f"{line} strands {strands}"
+    width = _width(read, strands)
+    line = " ".join(["braid", *map(str, read)])
+    return _closure(read, width), line if strands is None else f"{line} strands {width}"
 
 
 def _width(word: list[int], strands: object) -> int:
@@ -78,7 +64,7 @@ def _width(word: list[int], strands: object) -> int:
     return width
 
 
-def closure(word: list[int], width: int) -> Code:
+def _closure(word: list[int], width: int) -> Code:
     """The code of the closure of a checked word."""
     # Provisional edges: p < width is the edge at position p at the bottom, width + 2k and width + 2k + 1 are
     # those above letter k. At the top, position p is glued to the bottom edge p.

@@ -7,12 +7,12 @@ from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from kt_widgets.diagrams.braid import braid_code, braid_text
-from kt_widgets.diagrams.dowker import dowker_code, dowker_of, dowker_text
-from kt_widgets.diagrams.entries import circle_count, items, whole
-from kt_widgets.diagrams.gauss import gauss_code, gauss_of, gauss_text
+from kt_widgets.diagrams.braid import read_braid
+from kt_widgets.diagrams.dowker import dowker_of, read_dowker
+from kt_widgets.diagrams.entries import circle_count, whole
+from kt_widgets.diagrams.gauss import gauss_of, read_gauss
 from kt_widgets.diagrams.notation import read_line
-from kt_widgets.diagrams.planar_diagram import planar_code, planar_text
+from kt_widgets.diagrams.planar_diagram import planar_text, read_planar
 from kt_widgets.diagrams.planar_map import Code, PlanarMap, Slots, ends_of_edges
 from kt_widgets.diagrams.wirtinger import arc_names, longitude, wirtinger
 from kt_widgets.errors import DiagramError
@@ -127,17 +127,16 @@ class Diagram(Portable, kind="diagram"):
     def __init__(
         self, slots: Iterable[Sequence[int]], signs: Iterable[int] | None = None, circles: int = 0
     ) -> None:
-        code = planar_code(slots, signs, circles)
-        self._set(code, planar_text(code))
+        self._set(*read_planar(slots, signs, circles))
 
     def _set(self, code: Code, source: str) -> None:
         self.__dict__.update(slots=code[0], signs=code[1], circles=code[2], source=source)
 
     @classmethod
-    def _trusted(cls, code: Code, source: str = "") -> Diagram:
+    def _trusted(cls, code: Code, source: str) -> Diagram:
         """A diagram of a code that is known to be consistent and planar."""
         diagram = object.__new__(cls)
-        diagram._set(code, source or planar_text(code))
+        diagram._set(code, source)
         return diagram
 
     # notations
@@ -154,8 +153,7 @@ class Diagram(Portable, kind="diagram"):
         >>> Diagram.from_braid([1, 1, 1]).signs
         (1, 1, 1)
         """
-        letters = items(word, "the braid word", "a list of letters")
-        return cls._trusted(braid_code(letters, strands), braid_text(letters, strands))
+        return cls._trusted(*read_braid(word, strands))
 
     @classmethod
     def from_gauss(cls, components: Iterable[Iterable[int]], signs: Iterable[int]) -> Diagram:
@@ -168,8 +166,7 @@ class Diagram(Portable, kind="diagram"):
         >>> Diagram.from_gauss([[1, -2, 3, -1, 2, -3]], signs=[1, 1, 1]).writhe
         3
         """
-        code = gauss_code(components, signs)
-        return cls._trusted(code, gauss_text(*gauss_of(code)))
+        return cls._trusted(*read_gauss(components, signs))
 
     @classmethod
     def from_dowker(cls, components: Iterable[int] | Iterable[Iterable[int]]) -> Diagram:
@@ -184,8 +181,7 @@ class Diagram(Portable, kind="diagram"):
         >>> Diagram.from_dowker([4, 6, 2]).signs
         (1, 1, 1)
         """
-        code = dowker_code(components)
-        return cls._trusted(code, dowker_text(dowker_of(gauss_of(code)[0])))
+        return cls._trusted(*read_dowker(components))
 
     @classmethod
     def from_planar_diagram(
@@ -425,17 +421,16 @@ class Diagram(Portable, kind="diagram"):
 
     @cached_property
     def _names(self) -> tuple[str, ...]:
-        return arc_names(sum(map(len, self._arc_edges)))
+        return arc_names(self.components[-1].arcs[-1])
 
-    def _component(self, number: int) -> tuple[int, int]:
-        """The arcs of a component as a range of indices, for a number from 1."""
-        count = len(self._arc_edges)
+    def _component(self, number: int) -> Component:
+        """A component by its number, counted from 1."""
+        count = len(self.components)
         if not 1 <= whole(number, "component") <= count:
             raise DiagramError(
                 f"there is no component {number}", where="component", accepted=f"a number from 1 to {count}"
             )
-        first = sum(map(len, self._arc_edges[: number - 1]))
-        return first, first + len(self._arc_edges[number - 1])
+        return self.components[number - 1]
 
     def meridian(self, component: int = 1) -> Word:
         """The meridian of a component at its base edge: the generator of the arc there.
@@ -450,7 +445,7 @@ class Diagram(Portable, kind="diagram"):
         >>> Diagram.from_braid([1, 1]).meridian(2)
         Word('b')
         """
-        return Word(((self._names[self._component(component)[0]], 1),))
+        return Word(((self._names[self._component(component).arcs[0] - 1], 1),))
 
     def longitude(self, component: int = 1) -> Word:
         """The longitude of a component at its base edge, with linking number 0 with it, as a literal word.
@@ -468,20 +463,16 @@ class Diagram(Portable, kind="diagram"):
         >>> print(d.longitude())
         c a b a^-3
         """
-        first, last = self._component(component)
         names, arc, heads = self._names, self.arc_of_edge, self._ends[1]
-        edges = self.components[component - 1].edges
-        passes = [
-            (names[arc[self.slots[heads[edge] // 4][1]] - 1], self.signs[heads[edge] // 4])
-            for edge in edges
-            if heads[edge] % 4 == 0
-        ]
-        return longitude(passes, names[first], frozenset(names[first:last]))
+        own = self._component(component)
+        under = [heads[edge] // 4 for edge in own.edges if heads[edge] % 4 == 0]
+        passes = [(names[arc[self.slots[c][1]] - 1], self.signs[c]) for c in under]
+        return longitude(passes, names[own.arcs[0] - 1], frozenset(names[a - 1] for a in own.arcs))
 
     @cached_property
     def _wirtinger(self) -> Presentation:
         marks = {}
-        for number in range(1, len(self._arc_edges) + 1):
+        for number in range(1, len(self.components) + 1):
             marks[f"meridian:{number}"] = self.meridian(number)
             marks[f"longitude:{number}"] = self.longitude(number)
         return wirtinger(self.slots, self.signs, self.arc_of_edge, self._names, marks)
@@ -530,7 +521,7 @@ class Diagram(Portable, kind="diagram"):
         -1 + t
         """
         order = self._cover.order()
-        return order.symmetric_form() if len(self._arc_edges) == 1 else order
+        return order.symmetric_form() if len(self.components) == 1 else order
 
     # new diagrams
 
@@ -546,7 +537,7 @@ class Diagram(Portable, kind="diagram"):
             (left, under_in, right, under_out) if sign > 0 else (right, under_out, left, under_in)
             for (under_in, right, under_out, left), sign in zip(self.slots, self.signs, strict=True)
         )
-        return Diagram._trusted((slots, tuple(-sign for sign in self.signs), self.circles))
+        return self._relabelled(slots, tuple(-sign for sign in self.signs))
 
     def reverse(self) -> Diagram:
         """The diagram with every component reversed; the base edges stay.
@@ -566,7 +557,11 @@ class Diagram(Portable, kind="diagram"):
             (relabelled[under_out], relabelled[left], relabelled[under_in], relabelled[right])
             for under_in, right, under_out, left in self.slots
         )
-        return Diagram._trusted((slots, self.signs, self.circles))
+        return self._relabelled(slots, self.signs)
+
+    def _relabelled(self, slots: tuple[Slots, ...], signs: tuple[int, ...]) -> Diagram:
+        code = slots, signs, self.circles
+        return Diagram._trusted(code, planar_text(code))
 
     def same_diagram(self, other: Diagram) -> Relabelling | None:
         """A relabelling that turns this diagram into the other one on the sphere; None if there is none.

@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from itertools import accumulate, pairwise
 
-from kt_widgets.diagrams.entries import check_not_empty, check_planar, items, size, whole
+from kt_widgets.diagrams.entries import check_components, check_planar, items, size, whole
 from kt_widgets.diagrams.gauss import assemble
 from kt_widgets.diagrams.planar_map import Code, PlanarMap, Slots, ends_of_edges
 from kt_widgets.errors import DiagramError
 
-__all__ = ["MAX_DOWKER_CROSSINGS", "dowker_code", "dowker_of", "dowker_text"]
+__all__ = ["MAX_DOWKER_CROSSINGS", "dowker_of", "read_dowker"]
 
 MAX_DOWKER_CROSSINGS = 2_000
 """A Dowker-Thistlethwaite code has at most this many crossings: each is realised by a planarity test."""
@@ -20,8 +20,8 @@ ACCEPTED = (
 )
 
 
-def dowker_code(components: object) -> Code:
-    """The diagram of a Dowker-Thistlethwaite code; crossing i is the one met at the odd label 2i - 1.
+def read_dowker(components: object) -> tuple[Code, str]:
+    """The diagram of a Dowker-Thistlethwaite code, and its line; crossing i is met at the odd label 2i - 1.
 
     The passes are numbered 1, 2, 3, ... along the components, one component after the other, in such a way
     that each crossing gets one odd and one even number (each component has an even number of passes). The
@@ -38,8 +38,8 @@ def dowker_code(components: object) -> Code:
 
     Examples
     --------
-    >>> dowker_code([4, 6, 2])
-    (((4, 2, 5, 1), (6, 4, 1, 3), (2, 6, 3, 5)), (1, 1, 1), 0)
+    >>> read_dowker([4, 6, 2])
+    ((((4, 2, 5, 1), (6, 4, 1, 3), (2, 6, 3, 5)), (1, 1, 1), 0), 'dowker 4 6 2')
 
     References
     ----------
@@ -51,21 +51,25 @@ def dowker_code(components: object) -> Code:
     over = [gauss_label > 0 for labels in gauss for gauss_label in labels[::2]]
     signs = [turn if odd_over else -turn for turn, odd_over in zip(turns, over, strict=True)]
     slots, _, circles = assemble(gauss, signs)
-    slots, signs_, circles = assemble(gauss, _mirror_summands(slots, signs))
-    check_planar(slots, signs_)
-    return check_not_empty((slots, signs_, circles))
+    check_components(slots, circles)
+    code = slots, chosen, circles = assemble(gauss, _mirror_summands(slots, signs))
+    check_planar(slots, chosen)
+    return code, _dowker_text(read)
 
 
 def _components(components: object) -> list[list[int]]:
     """The code as lists of whole numbers, one per component."""
-    entries = items(components, "the Dowker-Thistlethwaite code", ACCEPTED)
+    entries = items(components, "the Dowker-Thistlethwaite code", ACCEPTED, MAX_DOWKER_CROSSINGS)
     if not entries:
         raise DiagramError("the code is empty", where="the code", accepted=ACCEPTED)
-    nested = [isinstance(entry, Sequence) and not isinstance(entry, (str, bytes)) for entry in entries]
+    nested = [isinstance(entry, Iterable) and not isinstance(entry, (str, bytes)) for entry in entries]
     if not any(nested):
         rows = [entries]
     elif all(nested):
-        rows = [items(entry, f"component {i}", ACCEPTED) for i, entry in enumerate(entries, start=1)]
+        rows = [
+            items(entry, f"component {number}", ACCEPTED, MAX_DOWKER_CROSSINGS)
+            for number, entry in enumerate(entries, start=1)
+        ]
     else:
         at = nested.index(False) + 1
         raise DiagramError(
@@ -225,12 +229,12 @@ def dowker_of(components: Sequence[Sequence[int]]) -> tuple[tuple[int, ...], ...
     )
 
 
-def dowker_text(components: Sequence[Sequence[int]]) -> str:
+def _dowker_text(components: Sequence[Sequence[int]]) -> str:
     """The line of a Dowker-Thistlethwaite code.
 
     Examples
     --------
-    >>> dowker_text([[4], [2], []])
+    >>> _dowker_text([[4], [2], []])
     'dowker 4 / 2 circles 1'
     """
     knotted = [labels for labels in components if labels]

@@ -4,14 +4,15 @@ from __future__ import annotations
 
 import operator
 from collections.abc import Iterable, Sequence
+from itertools import islice
 
-from kt_widgets.diagrams.planar_map import Code, PlanarMap, Slots, ends_of_edges
+from kt_widgets.diagrams.planar_map import PlanarMap, Slots, ends_of_edges
 from kt_widgets.errors import DiagramError, LimitError
 
 __all__ = [
     "MAX_CIRCLES",
     "MAX_CROSSINGS",
-    "check_not_empty",
+    "check_components",
     "check_planar",
     "circle_count",
     "items",
@@ -42,21 +43,20 @@ def whole(value: object, where: str) -> int:
     )
 
 
-def items(values: object, what: str, accepted: str) -> list[object]:
-    """The entries of a list-like value, refused at once beyond the size limit."""
+def items(values: object, what: str, accepted: str, most: int) -> list[object]:
+    """The entries of a list-like value; not more than `most` are looked at."""
     if isinstance(values, (str, bytes, dict, set, frozenset)) or not isinstance(values, Iterable):
         raise DiagramError(f"{what} is a {type(values).__name__}, not a list", where=what, accepted=accepted)
-    if isinstance(values, Sequence):
-        size(len(values), 2 * MAX_CROSSINGS, f"entries in {what}")
-    return list(values)
+    entries = list(islice(values, most + 1))
+    if len(entries) > most:
+        raise LimitError(f"more than {most} entries", where=what, accepted=f"at most {most}")
+    return entries
 
 
 def size(count: int, most: int, what: str) -> None:
-    """Refuse a size beyond its limit."""
+    """Refuse a number of things beyond its limit."""
     if count > most:
-        raise LimitError(
-            f"{count} {what} are too many", where="size of the input", accepted=f"at most {most}"
-        )
+        raise LimitError(f"{count} {what} are too many", where=what, accepted=f"at most {most}")
 
 
 def circle_count(value: object) -> int:
@@ -71,7 +71,7 @@ def circle_count(value: object) -> int:
 def sign_list(signs: object, crossings: int) -> tuple[int, ...]:
     """The signs of crossings 1, 2, ..., each +1 or -1."""
     read = []
-    for number, value in enumerate(items(signs, "the signs", "a list of +1 and -1"), start=1):
+    for number, value in enumerate(items(signs, "the signs", "a list of +1 and -1", MAX_CROSSINGS), start=1):
         sign = whole(value, f"sign {number}")
         if sign not in (1, -1):
             raise DiagramError(f"{sign} is not a sign", where=f"sign {number}", accepted="+1 or -1")
@@ -98,14 +98,13 @@ def check_planar(slots: Sequence[Slots], signs: Sequence[int]) -> None:
             )
 
 
-def check_not_empty(code: Code) -> Code:
-    """Refuse the diagram without components."""
-    slots, _, circles = code
+def check_components(slots: Sequence[Slots], circles: int) -> None:
+    """Refuse the diagram without components, and too many crossingless ones."""
+    size(circles, MAX_CIRCLES, "crossingless components")
     if not slots and not circles:
         raise DiagramError(
             "a diagram needs at least one component", where="the code", accepted="a crossing or a circle"
         )
-    return code
 
 
 def listed(values: Iterable[int], most: int = 8) -> str:

@@ -6,7 +6,7 @@ from collections.abc import Sequence
 
 from kt_widgets.diagrams.entries import (
     MAX_CROSSINGS,
-    check_not_empty,
+    check_components,
     check_planar,
     items,
     sign_list,
@@ -16,32 +16,34 @@ from kt_widgets.diagrams.entries import (
 from kt_widgets.diagrams.planar_map import Code, Slots
 from kt_widgets.errors import DiagramError
 
-__all__ = ["assemble", "gauss_code", "gauss_of", "gauss_text"]
+__all__ = ["assemble", "gauss_of", "read_gauss"]
 
 ACCEPTED = "a list per component of the crossings in order of travel, +i passing over crossing i, -i under"
 
 
-def gauss_code(components: object, signs: object) -> Code:
-    """The diagram of a signed Gauss code; crossings 1, 2, ... in the order of their numbers.
+def read_gauss(components: object, signs: object) -> tuple[Code, str]:
+    """The diagram of a signed Gauss code, and its line; crossings 1, 2, ... in the order of their numbers.
 
     An empty list is a crossingless component.
 
     Examples
     --------
-    >>> gauss_code([[1, -2, 3, -1, 2, -3]], [1, 1, 1])
-    (((4, 2, 5, 1), (2, 6, 3, 5), (6, 4, 1, 3)), (1, 1, 1), 0)
+    >>> code, line = read_gauss([[1, -2, 3, -1, 2, -3]], [1, 1, 1])
+    >>> code[0], line
+    (((4, 2, 5, 1), (2, 6, 3, 5), (6, 4, 1, 3)), 'gauss 1 -2 3 -1 2 -3 signs + + +')
     """
-    read = [_component(c, i) for i, c in enumerate(items(components, "the Gauss code", ACCEPTED), start=1)]
-    crossings = _check_labels(read)
-    code = assemble(read, sign_list(signs, crossings))
-    check_planar(*code[:2])
-    return check_not_empty(code)
+    rows = items(components, "the Gauss code", ACCEPTED, MAX_CROSSINGS)
+    read = [_component(row, number) for number, row in enumerate(rows, start=1)]
+    code = slots, checked, circles = assemble(read, sign_list(signs, _check_labels(read)))
+    check_components(slots, circles)
+    check_planar(slots, checked)
+    return code, _gauss_text(read, checked)
 
 
 def _component(values: object, number: int) -> list[int]:
     where = f"component {number}"
     labels = []
-    for position, value in enumerate(items(values, where, ACCEPTED), start=1):
+    for position, value in enumerate(items(values, where, ACCEPTED, 2 * MAX_CROSSINGS), start=1):
         label = whole(value, f"{where}, position {position}")
         if not label:
             raise DiagramError(
@@ -133,12 +135,12 @@ def gauss_of(code: Code) -> tuple[tuple[tuple[int, ...], ...], tuple[int, ...]]:
     return (*components, *[()] * circles), signs
 
 
-def gauss_text(components: Sequence[Sequence[int]], signs: Sequence[int]) -> str:
+def _gauss_text(components: Sequence[Sequence[int]], signs: Sequence[int]) -> str:
     """The line of a signed Gauss code.
 
     Examples
     --------
-    >>> gauss_text([[1, 2], [-1, -2], []], [1, 1])
+    >>> _gauss_text([[1, 2], [-1, -2], []], [1, 1])
     'gauss 1 2 / -1 -2 signs + + circles 1'
     """
     knotted = [labels for labels in components if labels]

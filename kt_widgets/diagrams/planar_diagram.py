@@ -6,25 +6,24 @@ from collections.abc import Sequence
 
 from kt_widgets.diagrams.entries import (
     MAX_CROSSINGS,
-    check_not_empty,
+    check_components,
     check_planar,
     circle_count,
     items,
     listed,
     sign_list,
-    size,
     whole,
 )
 from kt_widgets.diagrams.planar_map import Code, Slots
 from kt_widgets.errors import DiagramError
 
-__all__ = ["planar_code", "planar_text"]
+__all__ = ["planar_text", "read_planar"]
 
 ACCEPTED = "four edge labels for each crossing, incoming under-edge first, then counter-clockwise"
 
 
-def planar_code(tuples: object, signs: object = None, circles: object = 0) -> Code:
-    """The diagram of a planar diagram code; crossings in the order of the tuples.
+def read_planar(tuples: object, signs: object = None, circles: object = 0) -> tuple[Code, str]:
+    """The diagram of a planar diagram code, and its line; crossings in the order of the tuples.
 
     The labels are 1 to 2n, consecutive along each component in its direction, so that they tell the direction
     of the over-strands too, except for a component of two edges that is over at both its crossings: then
@@ -32,24 +31,26 @@ def planar_code(tuples: object, signs: object = None, circles: object = 0) -> Co
 
     Examples
     --------
-    >>> planar_code([(4, 2, 5, 1), (2, 6, 3, 5), (6, 4, 1, 3)])[1]
-    (1, 1, 1)
-    >>> planar_code([], circles=1)
-    ((), (), 1)
+    >>> code, line = read_planar([(4, 2, 5, 1), (2, 6, 3, 5), (6, 4, 1, 3)])
+    >>> code[1], line
+    ((1, 1, 1), 'planar 4,2,5,1; 2,6,3,5; 6,4,1,3')
+    >>> read_planar([], circles=1)
+    (((), (), 1), 'planar circles 1')
 
     References
     ----------
     M. Mastin, Links and planar diagram codes, J. Knot Theory Ramifications 24 (2015).
     """
-    rows = items(tuples, "the planar diagram code", ACCEPTED)
-    size(len(rows), MAX_CROSSINGS, "crossings")
+    rows = items(tuples, "the planar diagram code", ACCEPTED, MAX_CROSSINGS)
     slots = [_slots(row, number) for number, row in enumerate(rows, start=1)]
     loops = circle_count(circles)
     _check_labels(slots)
     given = None if signs is None else sign_list(signs, len(slots))
     derived = _signs(slots, _successors(slots), given)
+    check_components(slots, loops)
     check_planar(slots, derived)
-    return check_not_empty((tuple(slots), derived, loops))
+    code = tuple(slots), derived, loops
+    return code, planar_text(code)
 
 
 def planar_text(code: Code) -> str:
@@ -80,7 +81,8 @@ def _is_ambiguous(slots: Sequence[Slots]) -> bool:
 def _slots(row: object, number: int) -> Slots:
     where = f"crossing {number}"
     labels = [
-        whole(value, f"{where}, label {k}") for k, value in enumerate(items(row, where, ACCEPTED), start=1)
+        whole(value, f"{where}, label {k}")
+        for k, value in enumerate(items(row, where, ACCEPTED, MAX_CROSSINGS), start=1)
     ]
     if len(labels) != 4:
         raise DiagramError(f"{len(labels)} labels at one crossing", where=where, accepted=ACCEPTED)

@@ -74,7 +74,8 @@ def longitude(passes: Sequence[Letter], meridian: str, own: frozenset[str]) -> W
 
     `passes` are the over-arcs and signs in order of travel from the base edge, `own` the names of the
     component's arcs. After the arc a with sign e the generator x has become a^-e x a^e, so that the product
-    w of all a^e commutes with the meridian x of the base edge; w x^-k has linking number 0 with the component.
+    w of all a^e commutes with the meridian x of the base edge; w x^-k has linking number 0 with the
+    component.
 
     Examples
     --------
