@@ -25,6 +25,7 @@ __all__ = [
     "MAX_CELLS",
     "Fact",
     "facts",
+    "facts_latex",
     "homology",
     "maths",
     "matrix",
@@ -39,14 +40,14 @@ MAX_CELLS = 10_000
 
 
 def maths(text: str) -> str:
-    """Unicode mathematics as HTML, letters in italics.
+    """Unicode mathematics as HTML, small letters in italics.
 
     Examples
     --------
-    >>> maths("1 − 3t < ab")
-    '1 − 3<i>t</i> &lt; <i>ab</i>'
+    >>> maths("Z[t] < ab")
+    'Z[<i>t</i>] &lt; <i>ab</i>'
     """
-    return re.sub(r"[A-Za-z]+|[<>&]", lambda m: escape(m[0]) if m[0] in "<>&" else f"<i>{m[0]}</i>", text)
+    return re.sub(r"[a-z]+|[<>&]", lambda m: escape(m[0]) if m[0] in "<>&" else f"<i>{m[0]}</i>", text)
 
 
 def _attributes(**values: object) -> str:
@@ -156,6 +157,9 @@ def matrix(c: ChainComplex, n: int) -> str:
         sides = edges("row")
     else:
         sides, tops = ['<th scope="row"><i>e</i></th>'] * rows, edges("col")
+    names = [name_text(g, "unicode") for g in c.generators]
+    across = names if n == 1 else [f"r{j}" for j in range(1, columns + 1)]
+    down = ["e"] * rows if n == 1 else names
     lines = []
     for i, side in enumerate(sides):
         line = []
@@ -169,6 +173,7 @@ def matrix(c: ChainComplex, n: int) -> str:
                     Place("entry", (n, i + 1, j + 1)),
                     maths(text),
                     role="gridcell",
+                    data_name=f"({down[i]}, {across[j]}) of ∂{n}",
                     data_value=text,
                     **more,
                 )
@@ -187,15 +192,16 @@ def matrix(c: ChainComplex, n: int) -> str:
     return head + table + _tools(*buttons)
 
 
-# Homology ----------------------------------------------------------------------------------------------------
+# Homology ------------------------------------------------------------------------------------------
 
 
 class Fact(NamedTuple):
-    """One thing said about the homology: its name and value in unicode, and both in LaTeX."""
+    """One thing said about the homology: its name and value in unicode, both in LaTeX, and a note in words."""
 
     name: str
     value: str
     latex: str
+    note: str = ""
 
 
 def ring_text(over: RingName) -> str:
@@ -220,7 +226,7 @@ def facts(cover: Cover, over: RingName = "Z") -> list[Fact]:
     >>> from kt_widgets.groups.presentations import Presentation
     >>> x = Cover(Presentation.parse("< a, b | a b a = b a b >"))
     >>> for fact in facts(x):
-    ...     print(fact.name, "|", fact.value)
+    ...     print(fact.name, "|", fact.value, fact.note)
     H₀ | Z[t, 1/t]/(−1 + t)
     order of H₁ | 1 − t + t² up to units
     E₁ | (1 − t + t²)
@@ -237,8 +243,9 @@ def facts(cover: Cover, over: RingName = "Z") -> list[Fact]:
         found.append(
             Fact(
                 "order of H₁",
-                f"{order.text('unicode')} up to units" if order else f"0: H₁ has rank {c.rank(1)}",
+                order.text("unicode"),
                 rf"\operatorname{{ord}} H_1 \doteq {order.latex()}",
+                "up to units" if order else f"H₁ has rank {c.rank(1)}",
             )
         )
         k, ideal = 0, None
@@ -257,17 +264,9 @@ def facts(cover: Cover, over: RingName = "Z") -> list[Fact]:
             found.append(
                 Fact(f"generator{which}", chain_text(parts), f"z_{{{i}}} = {chain_text(parts, 'latex')}")
             )
-    second = c.rank(2)
-    found.append(
-        Fact(
-            "H₂",
-            f"free of rank {second}: of the presentation complex, redundant relators count"
-            if second
-            else "0",
-            rf"\operatorname{{rank}} H_2 = {second}",
-        )
-    )
-    return found
+    free = [LaurentPolynomial(over=over)] * c.rank(2)
+    note = "of the presentation complex: each redundant relator adds a summand" if free else ""
+    return [*found, _sum_of_quotients("H₂", "H_2", free, over)._replace(note=note)]
 
 
 def _sum_of_quotients(name: str, symbol: str, factors: Sequence[LaurentPolynomial], over: RingName) -> Fact:
@@ -275,6 +274,11 @@ def _sum_of_quotients(name: str, symbol: str, factors: Sequence[LaurentPolynomia
     value = " ⊕ ".join(f"{text}/({f.text('unicode')})" if f else text for f in factors)
     formula = r" \oplus ".join(f"{latex}/({f.latex()})" if f else latex for f in factors)
     return Fact(name, value or "0", rf"{symbol} \cong {formula or '0'}")
+
+
+def facts_latex(found: Sequence[Fact]) -> str:
+    """Facts in LaTeX, one below the other, for use between dollars."""
+    return r"\begin{gathered} " + r" \\ ".join(f.latex for f in found) + r" \end{gathered}"
 
 
 def homology(cover: Cover, rings: Sequence[RingName] = ("Z", "Q", 2, 3, 5), more: str = "") -> str:
@@ -292,11 +296,13 @@ def homology(cover: Cover, rings: Sequence[RingName] = ("Z", "Q", 2, 3, 5), more
     parts = []
     for name in rings:
         found = facts(cover, name)
-        rows = "".join(f"<dt>{maths(f.name)}</dt><dd>{maths(f.value)}</dd>" for f in found)
-        latex = r" \\ ".join(f.latex for f in found)
+        rows = "".join(
+            f"<dt>{escape(f.name)}</dt><dd><span>{maths(f.value)}</span> <small>{escape(f.note)}</small></dd>"
+            for f in found
+        )
         parts.append(
             f'<section{_attributes(data_when=f"ring={name}")}><dl class="kt-facts kt-math">{rows}</dl>'
-            + _tools(("copy", "copy LaTeX", {"data_text": rf"\begin{{gathered}} {latex} \end{{gathered}}"}))
+            + _tools(("copy", "copy LaTeX", {"data_text": facts_latex(found)}))
             + "</section>"
         )
     return (

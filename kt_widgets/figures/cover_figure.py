@@ -1,4 +1,4 @@
-"""The figure of an infinite cyclic cover: the strip of lifted edges, and boundaries of 2-cells traced there."""
+"""The figure of an infinite cyclic cover: the strip of lifted edges, and boundaries of 2-cells traced on."""
 
 from __future__ import annotations
 

@@ -58,7 +58,7 @@ function indexWords(place, links) {
     case "letter": return `${at[1]} of r${at[0]}`;
     case "entry": {
       const row = (links[place] ?? []).find((p) => p.startsWith("generator:"))?.split(":")[1];
-      return at[0] === "2" ? `(${row ?? at[1]}, r${at[2]}) of ∂2` : `${row ?? at[2]} of ∂1`;
+      return at[0] === "2" ? `(${row ?? `row ${at[1]}`}, r${at[2]}) of ∂2` : `(e, ${row ?? at[2]}) of ∂1`;
     }
     default: return at.join(", ");
   }
@@ -69,15 +69,16 @@ function nameOf(place, links) {
   return `${KINDS[kind] ?? kind} ${indexWords(place, links)}`;
 }
 
-// What is lit, in words: "entry (a, r2) of ∂2; with letters 1 of r2, 4 of r2; edges a, t a; arc 1; crossing 2".
-function wordsFor(place, links, value) {
+// What is lit, in words: "entry (a, r2) of ∂2: 1 − t — letters 1 of r2, 4 of r2; edges a, t a; arc 1; crossing 2".
+function wordsFor(place, links, { name, value } = {}) {
   const groups = {};
   for (const other of links[place] ?? []) (groups[other.split(":")[0]] ??= []).push(indexWords(other, links));
   const parts = Object.keys(KINDS).filter((kind) => groups[kind]).map((kind) => {
     const found = groups[kind];
     return `${found.length > 1 ? (PLURALS[kind] ?? `${KINDS[kind]}s`) : KINDS[kind]} ${found.join(", ")}`;
   });
-  return nameOf(place, links) + (value ? `: ${value}` : "") + (parts.length ? ` — ${parts.join("; ")}` : "");
+  const known = name ? `${KINDS[place.split(":")[0]]} ${name}` : nameOf(place, links);
+  return known + (value ? `: ${value}` : "") + (parts.length ? ` — ${parts.join("; ")}` : "");
 }
 
 // The one relator that a place belongs to, as a string, or null.
@@ -129,6 +130,13 @@ function button(label, text, action) {
   const node = element("button", { type: "button", "aria-label": label }, text);
   node.addEventListener("click", action);
   return node;
+}
+
+// A selector that finds the same control or part again after a new build.
+function whereIs(node) {
+  if (node.dataset.place) return `[data-place="${node.dataset.place}"]`;
+  const name = node.closest("[data-set]")?.dataset.set;
+  return name ? `[data-set="${name}"]:not(form), form[data-set="${name}"] input` : "";
 }
 
 // Notebook shortcuts must not see the keys that are meant for the view.
@@ -204,6 +212,7 @@ class View {
   }
 
   build() {
+    const active = this.root.contains(document.activeElement) ? whereIs(document.activeElement) : "";
     this.root.innerHTML = this.get("body") ?? "";
     this.pictures = new Map([...this.root.querySelectorAll("svg")].map((svg) => [svg, svg.outerHTML]));
     prefixIds(this.root, this.prefix);
@@ -217,6 +226,7 @@ class View {
     keepKeys(this.root);
     this.root.append(this.live);
     this.showStep();
+    if (active) this.root.querySelector(active)?.focus();
   }
 
   // Parts by place; the first visible part of each place can have the keyboard's focus, one at a time by tab.
@@ -310,7 +320,7 @@ class View {
   }
 
   words(place) {
-    return wordsFor(place, this.links, this.parts.get(place)?.[0].dataset.value);
+    return wordsFor(place, this.links, this.parts.get(place)?.[0].dataset);
   }
 
   tabStop(part) {
@@ -443,7 +453,7 @@ class View {
         part.classList.toggle("kt-read", read.has(name));
       }
     }
-    this.root.classList.toggle("kt-stepping", read.size > 0);
+    this.reading = read.size > 0;
     this.lightUp();
   }
 
@@ -452,6 +462,7 @@ class View {
     const place = this.get("focus") || this.get("selected");
     const shown = (place && relatorOf(place, this.links)) || this.steps[this.stepNow]?.cell.split(":")[1] || "1";
     this.shown = shown;
+    this.root.classList.toggle("kt-stepping", this.reading && shown === this.steps[this.stepNow].cell.split(":")[1]);
     for (const part of this.root.querySelectorAll(TRACES)) {
       part.classList.toggle("kt-away", part.dataset.place.split(":")[1] !== shown);
     }

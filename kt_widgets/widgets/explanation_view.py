@@ -1,0 +1,64 @@
+"""`ExplanationView`: the entry of boundary(2) that is selected, explained by its letters and edges."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import traitlets
+
+from kt_widgets.figures import bodies
+from kt_widgets.figures.drawing import Drawing
+from kt_widgets.figures.explain_figure import explain
+from kt_widgets.figures.tables import lines_scene
+from kt_widgets.places import Place
+from kt_widgets.widgets.subject import Subject
+from kt_widgets.widgets.view import View, reporting
+
+__all__ = ["ExplanationView"]
+
+_HINT = "Click an entry of ∂₂ (or press Enter on it) to see the letters that it adds up."
+
+
+class ExplanationView(View):
+    """The figure `kt_widgets.figures.explain` of the entry, or of the letter's entry, that is selected.
+
+    Examples
+    --------
+    >>> view = ExplanationView("< t, x | t x t^-1 = x^2 >")
+    >>> view.selected = "entry:2:2:1"
+    >>> view.snapshot()
+    Drawing('entry of boundary 2 in row x and column r1', 640 x 136.5 pt)
+    """
+
+    def make_body(self, subject: Subject) -> str:
+        # Another subject starts with nothing selected.
+        return f'<h3>One entry</h3><p class="kt-quiet">{_HINT}</p>'
+
+    def make_drawing(self, subject: Subject) -> Drawing:
+        entry = _entry(subject, self.selected)
+        if entry is None:
+            return Drawing(lines_scene([_HINT], "no entry is selected"))
+        return explain(subject.cover.chains(), entry, preset="screen")
+
+    @traitlets.observe("selected")
+    def _another_selected(self, change: Any) -> None:
+        with reporting(self):
+            entry = _entry(self.subject, change["new"])
+            if entry:
+                drawing = self.make_drawing(self.subject)
+                python = f"kt.figures.explain(cover.chains(), entry={entry!r})"
+                picture = bodies.picture(drawing, "entry", python)
+                self.body = self.whole(f"<h3>The {drawing.scene.title}</h3>{picture}")
+            elif not change["new"]:
+                self.body = self.whole(self.make_body(self.subject))
+
+
+def _entry(subject: Subject, selected: str) -> tuple[str, str] | None:
+    """The generator and the relator of the entry or letter selected, if it is one of boundary(2)."""
+    place = Place.parse(selected)
+    match place.kind, place.indices:
+        case "entry", (2, int(i), int(r)):
+            return subject.cover.presentation.generators[i - 1], f"r{r}"
+        case "letter", (int(r), int(j)):
+            return subject.cover.presentation.boundary_words[r - 1].letters[j - 1][0], f"r{r}"
+    return None
