@@ -196,7 +196,7 @@ def matrix(c: ChainComplex, n: int) -> str:
 
 
 class Fact(NamedTuple):
-    """One thing said about the homology: its name and value in unicode, both in LaTeX, and a note in words."""
+    """One thing said about the homology: name and value in unicode, both in LaTeX, and a note in words."""
 
     name: str
     value: str

@@ -93,10 +93,11 @@ def steps(cover: Cover) -> list[Step]:
     rows = {g: i for i, g in enumerate(presentation.generators, 1)}
     found: list[Step] = []
     for r, word in enumerate(presentation.boundary_words, 1):
-        written = f"r{r} = {word_text(word, 'unicode')}, lifted from e"
+        cell = "∂" + name_text(f"f{r}", "unicode")
+        written = f"{name_text(f'r{r}', 'unicode')} = {word_text(word, 'unicode')}, lifted from e"
         sums: dict[str, dict[int, int]] = {}
         found.append(
-            Step(cell=f"cell:{r}:0", letter="", edge="", entry="", caption=written, sum={}, sum_text=f"∂f{r}")
+            Step(cell=f"cell:{r}:0", letter="", edge="", entry="", caption=written, sum={}, sum_text=cell)
         )
         visits = cover.visits(r)
         for v in visits:
@@ -106,7 +107,7 @@ def steps(cover: Cover) -> list[Step]:
             letter, name = word_text([(v.generator, v.sign)], "unicode"), name_text(v.generator, "unicode")
             way = f"from {lift_name(v.start, 'e')} to {lift_name(v.end, 'e')}"
             ordered = [(g, sums[g]) for g in presentation.generators if g in sums]
-            start = f"∂f{r} =" if v.position == len(visits) else "so far:"
+            start = f"{cell} =" if v.position == len(visits) else "so far:"
             found.append(
                 Step(
                     cell=str(v.cell),

@@ -37,7 +37,7 @@ class ExplanationView(View):
     def make_drawing(self, subject: Subject) -> Drawing:
         entry = _entry(subject, self.selected)
         if entry is None:
-            return Drawing(lines_scene([_HINT], "no entry is selected"))
+            return Drawing(lines_scene(["no entry of $∂_2$ is selected"], "no entry is selected"))
         return explain(subject.cover.chains(), entry, preset="screen")
 
     @traitlets.observe("selected")

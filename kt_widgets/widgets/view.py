@@ -137,7 +137,8 @@ class View(anywidget.AnyWidget):
         return bundle(self, self.snapshot(), self.make_latex(self.subject))
 
     def close(self) -> None:
-        """Close the view and let go of all that observes it."""
+        """Close the view, its layout too, and let go of all that observes it."""
+        self.layout.close()
         super().close()
         self.unobserve_all()
 

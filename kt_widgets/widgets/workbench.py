@@ -60,6 +60,9 @@ class Workbench(ipywidgets.Box):
 
     selected = traitlets.Unicode()
 
+    # Everything that closes with the workbench; nothing yet, should the value be refused.
+    _parts: tuple[ipywidgets.Widget, ...] = ()
+
     def __init__(self, value: Viewable, **traits: Any) -> None:
         subject = Subject.of(value)
         self.line = LineView(subject)
@@ -80,8 +83,9 @@ class Workbench(ipywidgets.Box):
             self.homology,
             self.boundary1,
         )
-        self._links = linked(self.views)
         self._words, self._results = _stack(), _stack()
+        stacks = (self._words, self._results)
+        self._parts = (*linked(self.views), *self.views, *stacks, *(stack.layout for stack in stacks))
         super().__init__(**traits)
         self.add_class("kt-workbench")
         for view in (self.line, self.cover):
@@ -152,10 +156,9 @@ class Workbench(ipywidgets.Box):
 
     def close(self) -> None:
         """Close all views and the links between them."""
-        self.line.unobserve(self._entered, "text")
-        self.line.unobserve(self._picked, "selected")
-        for part in (*self._links, *self.views, self._words, self._results):
+        for part in self._parts:
             part.close()
+        self.layout.close()
         super().close()
 
 

@@ -87,7 +87,7 @@ def test_focus_selection_stepping_and_errors(lab: Any, chromium_page: Any) -> No
     assert places(first.locator(".kt-now[data-place^='letter:']")) == {"letter:1:1"}
     page.keyboard.press("End")
     wait_for(page, lab, "bench.cover.step", "4")
-    assert first.locator(".kt-sum").inner_text().startswith("∂f1 = ")
+    assert first.locator(".kt-sum").inner_text().startswith("∂f₁ = ")
     assert second.locator(".kt-now").count() == 0
 
     # Arrows move among the parts of one view; letters typed there are not commands of the notebook.

@@ -9,6 +9,7 @@ from typing import Any
 
 import ipywidgets
 import pytest
+from ipywidgets.widgets.widget import _instances
 
 import kt_widgets as kt
 from kt_widgets.figures.drawing import Drawing
@@ -68,7 +69,8 @@ def test_formulas_fall_back_to_latex_and_pictures_do_not() -> None:
 
 
 @pytest.mark.parametrize(
-    "text", ["", "braid", "braid 1 x", "knot 3", "< a, b | a b", "< a, b | [a, b] >", "dowker 4 6 3"]
+    "text",
+    ["", "braid", "braid 1 x", "knot 3", "< a, b | a b", "< a, b, c | a^2 b^-1 c^-2 >", "dowker 4 6 3"],
 )
 def test_wrong_text_is_answered_under_the_line_and_changes_nothing(text: str) -> None:
     bench = Workbench("braid 1 1 1")
@@ -142,8 +144,9 @@ def test_an_unexpected_error_is_shown_too(monkeypatch: pytest.MonkeyPatch) -> No
 
 def test_what_is_shared_is_linked_in_the_browser_only() -> None:
     bench = Workbench("braid 1 1 1")
-    assert {link.source[1] for link in bench._links} == set(SHARED)
-    assert all(isinstance(link, ipywidgets.widgets.widget_link.Link) for link in bench._links)
+    links = [part for part in bench._parts if isinstance(part, ipywidgets.widgets.widget_link.Link)]
+    assert {link.source[1] for link in links} == set(SHARED)
+    assert len(links) == len(SHARED) * (len(bench.views) - 1)
     bench.line.focus = "arc:1"
     assert bench.cover.focus == ""
     bench.close()
@@ -151,14 +154,15 @@ def test_what_is_shared_is_linked_in_the_browser_only() -> None:
 
 @pytest.mark.parametrize("kind", [*KINDS, Workbench], ids=lambda kind: kind.__name__)
 def test_a_closed_view_goes_away(kind: type[View] | type[Workbench]) -> None:
+    gc.collect()
+    before = len(_instances)
     view = kind("braid 1 1 1")
     dead = weakref.ref(view)
-    before = len(ipywidgets.Widget.widgets) if hasattr(ipywidgets.Widget, "widgets") else 0
     view.close()
     del view
     gc.collect()
     assert dead() is None
-    assert before >= 0
+    assert len(_instances) == before
 
 
 def test_a_split_link_and_a_code_of_each_notation_are_read() -> None:

@@ -48,34 +48,41 @@ export function linkPage(page, state) {
 const superscript = (n) => String(n).replace(/[-0-9]/g, (c) => (c === "-" ? "⁻" : "⁰¹²³⁴⁵⁶⁷⁸⁹"[c]));
 const lift = (k, what) => (k === "0" ? what : `t${k === "1" ? "" : superscript(k)} ${what}`);
 
+// The indices of a place in words, and what several of one kind have in common: ["2", "of r1"].
 function indexWords(place, links) {
   const [kind, ...at] = place.split(":");
   switch (kind) {
-    case "edge": return lift(at[1], at[0]);
-    case "vertex": return lift(at[0], "e");
-    case "cell": return lift(at[1], `f${at[0]}`);
-    case "relator": return `r${at[0]}`;
-    case "letter": return `${at[1]} of r${at[0]}`;
+    case "edge": return [lift(at[1], at[0]), ""];
+    case "vertex": return [lift(at[0], "e"), ""];
+    case "cell": return [lift(at[1], `f${at[0]}`), ""];
+    case "relator": return [`r${at[0]}`, ""];
+    case "letter": return [at[1], ` of r${at[0]}`];
     case "entry": {
-      const row = (links[place] ?? []).find((p) => p.startsWith("generator:"))?.split(":")[1];
-      return at[0] === "2" ? `(${row ?? `row ${at[1]}`}, r${at[2]}) of ∂2` : `(e, ${row ?? at[2]}) of ∂1`;
+      const generator = (links[place] ?? []).find((p) => p.startsWith("generator:"))?.split(":")[1];
+      if (at[0] === "1") return [`(e, ${generator ?? at[2]})`, " of ∂1"];
+      return [`(${generator ?? `row ${at[1]}`}, r${at[2]})`, " of ∂2"];
     }
-    default: return at.join(", ");
+    default: return [at.join(", "), ""];
   }
 }
 
 function nameOf(place, links) {
   const kind = place.split(":")[0];
-  return `${KINDS[kind] ?? kind} ${indexWords(place, links)}`;
+  return `${KINDS[kind] ?? kind} ${indexWords(place, links).join("")}`;
 }
 
-// What is lit, in words: "entry (a, r2) of ∂2: 1 − t — letters 1 of r2, 4 of r2; edges a, t a; arc 1; crossing 2".
+// What is lit, in words: "entry (a, r2) of ∂2: 1 − t — letters 1, 4 of r2; edges a, t a; arc 1; crossing 2".
 function wordsFor(place, links, { name, value } = {}) {
-  const groups = {};
-  for (const other of links[place] ?? []) (groups[other.split(":")[0]] ??= []).push(indexWords(other, links));
-  const parts = Object.keys(KINDS).filter((kind) => groups[kind]).map((kind) => {
-    const found = groups[kind];
-    return `${found.length > 1 ? (PLURALS[kind] ?? `${KINDS[kind]}s`) : KINDS[kind]} ${found.join(", ")}`;
+  const groups = new Map();
+  for (const other of links[place] ?? []) {
+    const kind = other.split(":")[0];
+    const [index, common] = indexWords(other, links);
+    const key = kind + common;
+    groups.set(key, { kind, common, indices: [...(groups.get(key)?.indices ?? []), index] });
+  }
+  const parts = [...groups.values()].map(({ kind, common, indices }) => {
+    const noun = indices.length > 1 ? (PLURALS[kind] ?? `${KINDS[kind]}s`) : KINDS[kind];
+    return `${noun} ${indices.join(", ")}${common}`;
   });
   const known = name ? `${KINDS[place.split(":")[0]]} ${name}` : nameOf(place, links);
   return known + (value ? `: ${value}` : "") + (parts.length ? ` — ${parts.join("; ")}` : "");
