@@ -143,10 +143,24 @@ class Diagram(Portable, kind="diagram"):
 
     @classmethod
     def from_braid(cls, word: Iterable[int], strands: int | None = None) -> Diagram:
-        """The closure of a braid; see `kt_widgets.diagrams.braid`.
+        """The closure of a braid.
 
-        Strands run upwards; letter +i is a positive crossing of strands i and i + 1, letter -i a negative
-        one. Crossings are in the order of the letters; unused strands are crossingless components.
+        Strands run upwards and the closure is oriented with them. Crossings are in the order of the letters;
+        components by their lowest strand at the bottom, where their base edges are.
+
+        Parameters
+        ----------
+        word : iterable of int
+            Letter +i is a positive (right-handed) crossing of strands i and i + 1, letter -i a negative one.
+        strands : int, optional
+            The least number that the letters need, unless given; unused strands are crossingless components.
+
+        Raises
+        ------
+        DiagramError
+            For a letter 0, what is no whole number, too few strands, or no letters and no strands.
+        LimitError
+            Beyond 100 000 letters or 10 000 strands.
 
         Examples
         --------
@@ -157,9 +171,23 @@ class Diagram(Portable, kind="diagram"):
 
     @classmethod
     def from_gauss(cls, components: Iterable[Iterable[int]], signs: Iterable[int]) -> Diagram:
-        """The diagram of a signed Gauss code: a list per component, +i passing over crossing i, -i under.
+        """The diagram of a signed Gauss code; crossings in the order of their numbers.
 
-        `signs` are those of crossings 1, 2, ...; an empty list is a crossingless component.
+        Parameters
+        ----------
+        components : iterable of iterables of int
+            The crossings along each component: +i passes over crossing i, -i under. The edge that leads into
+            the first of them is the component's base edge; an empty list is a crossingless component.
+        signs : iterable of +1 and -1
+            The signs of crossings 1, 2, ...
+
+        Raises
+        ------
+        DiagramError
+            If a crossing is not met once over and once under, numbers are left out, signs do not fit, or the
+            code is not planar: then with the connected piece and its genus.
+        LimitError
+            Beyond 100 000 crossings or 10 000 crossingless components.
 
         Examples
         --------
@@ -170,11 +198,28 @@ class Diagram(Portable, kind="diagram"):
 
     @classmethod
     def from_dowker(cls, components: Iterable[int] | Iterable[Iterable[int]]) -> Diagram:
-        """The diagram of a Dowker-Thistlethwaite code, flat for a knot, a list per component for a link.
+        """The diagram of a Dowker-Thistlethwaite code; crossing i is the one with the odd label 2i - 1.
 
-        Crossing i is the one with the odd label 2i - 1; a minus sign says that the even pass is over. The
-        code leaves each summand's mirror image open: its first crossing is made positive. See
-        `kt_widgets.diagrams.dowker` for links.
+        The code leaves the mirror image of each summand open: each is mirrored so that its first crossing is
+        positive. The summands are what is left when the diagram is cut through all edges that border the
+        same two faces (a crossing that this isolates is one too). Components run in the direction of their
+        numbers.
+
+        Parameters
+        ----------
+        components : iterable of int, or of iterables of int
+            The even partners of 1, 3, 5, ..., with a minus sign where the even pass is over. A flat list is a
+            knot. For a link there is a list per component: passes are numbered along one component after the
+            other so that each crossing gets an odd and an even number; an empty list is a crossingless
+            component.
+
+        Raises
+        ------
+        DiagramError
+            If an even number is missing, repeated or out of range, or no curve in the plane has this code:
+            then with the first stretch of the curve that cannot be drawn.
+        LimitError
+            Beyond 2 000 crossings, or 10 000 crossingless components.
 
         Examples
         --------
@@ -187,7 +232,15 @@ class Diagram(Portable, kind="diagram"):
     def from_planar_diagram(
         cls, tuples: Iterable[Sequence[int]], signs: Iterable[int] | None = None, circles: int = 0
     ) -> Diagram:
-        """The diagram of a planar diagram code; the same as the constructor.
+        """The diagram of a planar diagram code: the same as the constructor.
+
+        The labels are 1 to 2n, consecutive along each component in its direction (M. Mastin, Links and planar
+        diagram codes, J. Knot Theory Ramifications 24 (2015)).
+
+        Raises
+        ------
+        DiagramError, LimitError
+            As the constructor.
 
         Examples
         --------
@@ -200,12 +253,19 @@ class Diagram(Portable, kind="diagram"):
     def parse(cls, text: str) -> Diagram:
         """Read one line of text: a notation's name, then the code.
 
+        ``braid`` letters, perhaps ``strands`` n; ``gauss`` components separated by ``/``, ``signs``;
+        ``dowker`` components separated by ``/``; ``planar`` crossings separated by ``;``, perhaps ``signs``.
+        The last three may end with ``circles`` k for crossingless components. Numbers are separated by spaces
+        or commas. The codes are those of `from_braid`, `from_gauss`, `from_dowker` and `from_planar_diagram`.
+
         Raises
         ------
         ParseError
             If the line cannot be read; with line and column.
         DiagramError
             If the code is inconsistent, not planar or not realisable.
+        LimitError
+            Beyond the sizes of these.
 
         Examples
         --------

@@ -29,8 +29,8 @@ def read_dowker(components: object) -> tuple[Code, str]:
     is a knot; for a link there is a list per component, with half as many entries as the component has passes
     (an empty list is a crossingless component). Components run in the direction of their numbers.
 
-    The code fixes a prime diagram of a knot up to mirror image. **Chosen here**: each summand is mirrored so
-    that its first crossing is positive. The summands are what is left when the diagram is cut
+    The code fixes a prime diagram up to mirror image. Chosen here: each summand is mirrored so that its first
+    crossing is positive. The summands are what is left when the diagram is cut
     through all edges that border the same two faces; a crossing that such a cut isolates is a summand too.
 
     The realisation is a planarity test of the graph in which each crossing is a wheel whose four rim
