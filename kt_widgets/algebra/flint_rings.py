@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from fractions import Fraction
 from functools import lru_cache
-from math import lcm
+from math import gcd, lcm
 from operator import index
 from typing import Any, TypeAlias
 
@@ -13,7 +13,16 @@ from flint import fmpq_poly, fmpz, fmpz_mat, fmpz_poly, nmod_poly
 
 from kt_widgets.errors import AlgebraError
 
-__all__ = ["MAX_PRIME", "FlintPolynomial", "Ring", "RingName", "integer_kernel", "ring"]
+__all__ = [
+    "MAX_PRIME",
+    "FlintPolynomial",
+    "Ring",
+    "RingName",
+    "hermite_rows",
+    "integer_kernel",
+    "integer_solution",
+    "ring",
+]
 
 RingName: TypeAlias = str | int
 """``"Z"``, ``"Q"`` or a prime number p, which stands for the field of p elements."""
@@ -66,6 +75,10 @@ class Ring:
     def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
         """The coefficients as python numbers, lowest first."""
         raise NotImplementedError
+
+    def value(self, coefficient: Any) -> Any:
+        """One flint coefficient as a python number."""
+        return int(coefficient)
 
     def is_unit(self, coefficient: Any) -> bool:
         """Whether a nonzero flint coefficient has an inverse."""
@@ -123,6 +136,9 @@ class _Rationals(Ring):
         common = lcm(*(c.denominator for c in coefficients))
         numerators = [c.numerator * (common // c.denominator) for c in coefficients]
         return fmpq_poly(numerators, common)
+
+    def value(self, coefficient: Any) -> Fraction:
+        return Fraction(int(coefficient.p), int(coefficient.q))
 
     def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
         common = int(polynomial.denom())
@@ -235,3 +251,40 @@ def integer_kernel(rows: Sequence[Sequence[int]], columns: int) -> list[list[int
         return []
     reduced = [[int(x) for x in row] for row in fmpz_mat(kernel).lll().tolist()]
     return [row if next(x for x in row if x) > 0 else [-x for x in row] for row in reduced]
+
+
+def hermite_rows(rows: Sequence[Sequence[int]]) -> list[list[int]]:
+    """The nonzero rows of the Hermite normal form: a basis of the lattice that the rows span.
+
+    Examples
+    --------
+    >>> hermite_rows([[4, 1], [6, 1], [2, 0]])
+    [[2, 0], [0, 1]]
+    """
+    reduced = fmpz_mat([list(row) for row in rows]).hnf().tolist() if rows else []
+    return [[int(x) for x in row] for row in reduced if any(row)]
+
+
+def integer_solution(rows: Sequence[Sequence[int]], target: Sequence[int]) -> list[int] | None:
+    """A short integer vector x with sum(x_i * rows_i) = target, or None if there is none.
+
+    Among the relations between the rows and the target, one has to have coefficient +-1 at the target. LLL
+    with that coefficient weighed heavily puts such a relation last, shortened by the others (A. K. Lenstra,
+    H. W. Lenstra, L. Lovasz, Factoring polynomials with rational coefficients, Math. Ann. 261 (1982)).
+
+    Examples
+    --------
+    >>> integer_solution([[4, 0], [6, 1], [0, 1]], [2, 0])
+    [-1, 1, -1]
+    >>> integer_solution([[4, 0]], [2, 0]) is None
+    True
+    """
+    relations = integer_kernel(list(zip(*rows, target, strict=True)), len(rows) + 1)
+    if gcd(*(relation[-1] for relation in relations)) != 1:
+        return None
+    size = max(abs(x) for relation in relations for x in relation)
+    # Without the target the relations have a basis below size^2 entrywise; LLL may exceed it by 2^(rank).
+    weight = (len(rows) * size * size) << (len(relations) + 2)
+    weighed = [[*relation[:-1], relation[-1] * weight] for relation in relations]
+    relation = [int(x) for x in fmpz_mat(weighed).lll().tolist()[-1]]
+    return [-x if relation[-1] > 0 else x for x in relation[:-1]]

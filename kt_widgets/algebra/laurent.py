@@ -161,6 +161,19 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         """t^shift times this as a flint polynomial; the exponents must come out 0 or more."""
         return self._poly.left_shift(self._low + shift)
 
+    def coefficient(self, exponent: int) -> Any:
+        """The coefficient of t^exponent.
+
+        Examples
+        --------
+        >>> LaurentPolynomial.parse("1 - 3t").coefficient(1)
+        -3
+        """
+        place = exponent - self._low
+        if not 0 <= place < len(self._poly):
+            return self._ring.number(0)
+        return self._ring.value(self._poly[place])
+
     def terms(self) -> dict[int, Any]:
         """Exponent to nonzero coefficient, lowest first.
 
@@ -324,6 +337,37 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         other = self._coerced(other)
         return not divmod(other._poly, self._poly)[1] if self._poly else not other._poly
 
+    def floor_quotient(self, other: LaurentPolynomial) -> LaurentPolynomial:
+        """Over Z, for exponents 0 or more: the q that brings self - q * other nearest to a remainder.
+
+        Every coefficient of self - q * other from the degree of `other` upwards is in [0, c), where c > 0 is
+        the leading coefficient of `other`.
+
+        Examples
+        --------
+        >>> f, g = LaurentPolynomial.parse("5t^2 + 1"), LaurentPolynomial.parse("2t + 1")
+        >>> f.floor_quotient(g), f - f.floor_quotient(g) * g
+        (LaurentPolynomial('-1 + 2t'), LaurentPolynomial('2 + t^2'))
+        """
+        divisor = other.shifted(0)
+        leading = divisor[len(divisor) - 1]
+        if leading == 1:
+            return _trimmed(0, self.shifted(0) // divisor, self._ring)
+        # flint rounds small coefficients otherwise, and the remainder has to be unique.
+        remainder = [0] * self._low + self._ring.numbers(self._poly)
+        below = other._ring.numbers(divisor)
+        c = below.pop()
+        degree = len(below)
+        quotient = [0] * max(len(remainder) - degree, 0)
+        for exponent in range(len(remainder) - 1, degree - 1, -1):
+            q = remainder[exponent] // c
+            if q:
+                start = exponent - degree
+                quotient[start] = q
+                for k, b in enumerate(below, start):
+                    remainder[k] -= q * b
+        return _trimmed(0, self._ring.polynomial(quotient), self._ring)
+
     def __divmod__(self, other: LaurentPolynomial | Scalar) -> tuple[LaurentPolynomial, LaurentPolynomial]:
         if not self._ring.is_field:
             raise AlgebraError(
@@ -394,7 +438,7 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         --------
         >>> f, g = (LaurentPolynomial.parse(text, "Q") for text in ("t - 1", "1 - t + t^2"))
         >>> f.inverse_modulo(g), f.inverse_modulo(f * g)
-        (LaurentPolynomial('t', over='Q'), None)
+        (LaurentPolynomial('-t', over='Q'), None)
         """
         modulus = self._divisor(modulus)
         divisor, factor, _ = (self._poly % modulus._poly).xgcd(modulus._poly)
