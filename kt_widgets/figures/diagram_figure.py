@@ -104,7 +104,11 @@ def diagram(
                 f"a picture cannot be {width} points wide",
                 accepted=f"{_LEAST_WIDTH:g} to {_MOST_WIDTH:g} points",
             )
-        return Drawing(_scene(d, layout, look, show, width, width)[0])
+        first, _ = _scene(d, layout, look, show, width, width)
+        # Labels mostly find room inside, so the margin kept for them can be used.
+        wider = 2 * width - max(first.width, first.height)
+        second, _ = _scene(d, layout, look, show, wider, wider)
+        return Drawing(second if max(second.width, second.height) <= width else first)
     side = look.side * max(1.0, (len(d.slots) / _CROSSINGS_OF_SIDE) ** 0.5)
     sides = dict.fromkeys(min(look.width, side * growth) for growth in _GROWTH)
     scenes = (_scene(d, layout, look, show, side, side) for side in sides)

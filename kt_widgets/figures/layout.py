@@ -10,6 +10,7 @@ import numpy as np
 
 from kt_widgets.diagrams.planar_map import PlanarMap, Slots, ends_of_edges
 from kt_widgets.errors import DiagramError, LimitError
+from kt_widgets.figures.magnify import magnified
 from kt_widgets.figures.quality import is_embedded, score
 from kt_widgets.figures.relaxation import relaxed
 from kt_widgets.figures.strands import Curves, Path, curves_of_packing
@@ -59,8 +60,9 @@ def lay_out(
 ) -> Layout:
     """Lay out a diagram given by its planar diagram code.
 
-    Each connected piece is drawn by circle packing and relaxed; the relaxed curves are kept if they meet at
-    the crossings only and score better. Pieces are set side by side, crossingless components last.
+    Each connected piece is drawn by circle packing, then its small places are magnified and the whole is
+    relaxed; the best of these is kept that meets itself at the crossings only. Pieces are set side by side,
+    crossingless components last.
 
     Parameters
     ----------
@@ -124,13 +126,18 @@ def lay_out(
 
 
 def _drawn(piece: PlanarMap, outer: int) -> Curves:
-    """One piece: the better of packing and relaxation, about as large as its number of crossings asks."""
-    curves = curves_of_packing(piece, outer)
+    """One piece: the best of packed, magnified and relaxed curves, in a size that suits its crossings."""
+    packed = curves_of_packing(piece, outer)
     crossings = len(piece.mate) // 4
+    candidates = [packed]
     if crossings <= _MAX_RELAXED:
-        smooth = relaxed(curves)
-        if is_embedded(smooth) and score(smooth) > score(curves):
-            curves = smooth
+        even = magnified(packed)
+        candidates += [relaxed(even), even]
+    # The packing is embedded by its nature; of the others that is to be seen.
+    curves = max(
+        (curves for curves in candidates if curves is packed or is_embedded(curves)),
+        key=lambda curves: round(score(curves), 6),
+    )
     points = curves.points()
     size = max(np.ptp(points.real), np.ptp(points.imag))
     return curves.moved((0.6 + 1.1 * crossings**0.5) / size)

@@ -25,13 +25,16 @@ Indices: TypeAlias = NDArray[np.intp]
 
 _STEPS = 100
 # The part of the way to the solution that one step goes, and the part of the free room that it may use up.
-_SHARE, _ROOM = 0.2, 0.3
+_SHARE, _ROOM = 0.2, 0.45
+# How far along the strands a point that has little room slows its neighbours down.
+_SPREAD = 5
 _TENSION, _BENDING, _SQUARENESS, _REPULSION = 1.0, 5.0, 3.0, 5.0
 # With the mean area of a face as unit: how far repulsion reaches, and the area that pressure counts as small.
 _REACH, _SMALL_AREA = 0.7, 0.1
 _STRONGEST = 4.0
 # Points of an edge between its crossings, for diagrams of up to so many crossings and for larger ones.
-_FINE_UP_TO, _FINE, _COARSE = 30, 5, 3
+_INNER = ((10, 7), (30, 5))
+_COARSE = 3
 # Points drawn for each step of a chain: so many, and more where there are few crossings.
 _DRAWN, _DRAWN_MOST, _DRAWN_IN_ALL = 4, 10, 96
 
@@ -76,7 +79,7 @@ def _net(curves: Curves) -> tuple[_Net, Path]:
     """The chains of a drawn map, and where their points are at first."""
     mate = curves.planar_map.mate
     crossings = len(mate) // 4
-    inner = _FINE if crossings <= _FINE_UP_TO else _COARSE
+    inner = next((points for most, points in _INNER if crossings <= most), _COARSE)
     points = [curves.crossing(index) for index in range(crossings)]
     chains: list[tuple[int, ...]] = [()] * len(mate)
     sides: list[tuple[int, int]] = []
@@ -165,7 +168,7 @@ def relaxed(curves: Curves) -> Curves:
         np.minimum.at(room, end, nearest)
         slower = np.minimum(1, _ROOM * room / np.maximum(np.abs(move), 1e-300))
         # Neighbours slow down together, or the chain would crumple.
-        for _ in range(2):
+        for _ in range(_SPREAD):
             held = slower.copy()
             np.minimum.at(held, start, slower[end])
             np.minimum.at(held, end, slower[start])
