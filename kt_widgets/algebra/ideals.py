@@ -9,9 +9,10 @@ from math import comb
 from typing import Any, TypeAlias
 
 from kt_widgets.algebra.elimination import Elimination, Transforms, eliminate
-from kt_widgets.algebra.flint_rings import hermite_rows, integer_kernel, integer_solution
+from kt_widgets.algebra.flint_rings import hermite_rows, integer_kernel, integer_solution, ring
 from kt_widgets.algebra.laurent import LaurentPolynomial, Scalar, gcd_of, subtract_product
 from kt_widgets.algebra.matrix import LaurentMatrix
+from kt_widgets.algebra.sparse import kernel_vector
 from kt_widgets.errors import AlgebraError, CertificateError, LimitError
 from kt_widgets.text.parsing import parse_polynomial_list
 from kt_widgets.text.portable import Portable
@@ -25,13 +26,14 @@ __all__ = [
     "Ideal",
     "IdealCertificate",
     "fitting_certificate",
+    "fitting_divisor",
     "fitting_ideal",
 ]
 
 MAX_MINORS = 50_000
 """Largest number of minors that a Fitting ideal is made from."""
 
-MAX_IDEAL_SPAN = 200
+MAX_IDEAL_SPAN = 100
 """Largest span of a generator, divided by the gcd of all, of an ideal that is not principal."""
 
 Combination: TypeAlias = tuple[tuple[int, LaurentPolynomial], ...]
@@ -509,15 +511,18 @@ def _minors(core: LaurentMatrix, size: int) -> Iterator[tuple[_Place, LaurentPol
 
 def _core(matrix: LaurentMatrix, k: int) -> tuple[Elimination, int]:
     """The elimination of a presentation matrix, and the size of the core's minors that generate Fitt_k."""
+    if k < 0:
+        raise AlgebraError(f"there is no Fitting ideal number {k}", accepted="0, 1, 2, ...")
+    elimination = eliminate(matrix)
+    return elimination, max(elimination.core.shape[0] - k, 0)
+
+
+def _check_integral(matrix: LaurentMatrix) -> None:
     if matrix.over != "Z":
         raise AlgebraError(
             f"Fitting ideals are computed over Z[t,1/t], not over {matrix.over!r}",
             accepted="a matrix over Z; over a field use invariant_factors",
         )
-    if k < 0:
-        raise AlgebraError(f"there is no Fitting ideal number {k}", accepted="0, 1, 2, ...")
-    elimination = eliminate(matrix)
-    return elimination, max(elimination.core.shape[0] - k, 0)
 
 
 def fitting_ideal(matrix: LaurentMatrix, k: int) -> Ideal:
@@ -546,6 +551,7 @@ def fitting_ideal(matrix: LaurentMatrix, k: int) -> Ideal:
     >>> print(fitting_ideal(a, 0), fitting_ideal(a, 1), fitting_ideal(a, 2))
     (2 - 5t + 2t^2) (3, 1 + t) (1)
     """
+    _check_integral(matrix)
     elimination, size = _core(matrix, k)
     ideal = Ideal([])
     for _, minor in _minors(elimination.core, size):
@@ -554,6 +560,30 @@ def fitting_ideal(matrix: LaurentMatrix, k: int) -> Ideal:
         if ideal.is_unit():
             break
     return ideal
+
+
+def fitting_divisor(matrix: LaurentMatrix, k: int) -> LaurentPolynomial:
+    """The greatest common divisor of the k-th Fitting ideal, in normal form, over any of the rings.
+
+    Examples
+    --------
+    >>> fitting_divisor(LaurentMatrix([["1 - t", "1 - t^2"]], over="Q"), 0)
+    LaurentPolynomial('-1 + t', over='Q')
+    """
+    elimination, size = _core(matrix, k)
+    core = elimination.core
+    base = ring(matrix.over)
+    columns = list(range(core.shape[1]))
+    while size == core.shape[0] < len(columns):
+        # A relation that is a combination of others changes nothing; a knot's matrix has one.
+        vector = kernel_vector(core.sparse_rows(), columns, base)
+        assert vector is not None
+        redundant = next((j for j in sorted(vector) if vector[j].is_unit()), None)
+        if redundant is None:
+            break
+        columns.remove(redundant)
+    core = core.submatrix(range(core.shape[0]), columns)
+    return gcd_of((minor for _, minor in _minors(core, size)), matrix.over)
 
 
 @dataclass(frozen=True)
@@ -654,6 +684,7 @@ _MATRICES = ("matrix", "P", "P_inverse", "Q", "Q_inverse", "core")
 
 def fitting_certificate(matrix: LaurentMatrix, k: int) -> FittingCertificate:
     """The k-th Fitting ideal as `fitting_ideal` gives it, with its proof; the same errors."""
+    _check_integral(matrix)
     elimination, size = _core(matrix, k)
     transforms = elimination.transforms()
     found = dict(_minors(elimination.core, size))

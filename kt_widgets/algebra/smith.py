@@ -2,16 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from itertools import combinations, pairwise, product
 from typing import Any, TypeAlias
 
 from kt_widgets.algebra.elimination import Operations, Transforms, eliminate
-from kt_widgets.algebra.flint_rings import RingName, ring
-from kt_widgets.algebra.laurent import LaurentPolynomial, gcd_of, subtract_product
+from kt_widgets.algebra.flint_rings import ring
+from kt_widgets.algebra.laurent import LaurentPolynomial, gcd_of
 from kt_widgets.algebra.matrix import LaurentMatrix
-from kt_widgets.algebra.sparse import Row, fraction_free, scaled_inverse, subtract_line
+from kt_widgets.algebra.sparse import Row, kernel_vector, scaled_inverse, subtract_line
 from kt_widgets.errors import AlgebraError, CertificateError
 from kt_widgets.text.portable import Portable
 
@@ -204,7 +204,9 @@ class _Core:
 
     def compress(self) -> None:
         """Make the live part square and nonsingular: each kernel vector turns a row or column into zeros."""
-        while (vector := _kernel_vector(self.entries, self.rows, self.columns, self.over)) is not None:
+        while (
+            vector := kernel_vector([self.entries[i] for i in self.rows], self.columns, ring(self.over))
+        ) is not None:
             j = _reduce(vector, self.subtract_column)
             self.columns.remove(j)
             self.dead_columns.append(j)
@@ -213,7 +215,7 @@ class _Core:
             for i in self.rows:
                 for j, f in self.entries[i].items():
                     turned[j][i] = f
-            vector = _kernel_vector(turned, self.columns, self.rows, self.over)
+            vector = kernel_vector([turned[j] for j in self.columns], self.rows, ring(self.over))
             assert vector is not None
             i = _reduce(vector, self.subtract_row)
             self.rows.remove(i)
@@ -320,32 +322,6 @@ class _Core:
                 if not all(pivot.divides(f) for f in self.entries[k].values()):
                     return i, k
             return None
-
-
-def _kernel_vector(
-    entries: Sequence[Row], rows: Sequence[int], columns: Sequence[int], over: RingName
-) -> Row | None:
-    """A primitive vector that the submatrix sends to 0, by column; None if its columns are independent."""
-    base = ring(over)
-    lines = [entries[i] for i in rows]
-    found = fraction_free(lines, columns, base)
-    free = next((j for j in columns if j not in found.columns), None)
-    if free is None:
-        return None
-    picked = [lines[i] for i in found.rows]
-    chosen = [{j: f for j, f in line.items() if j in found.columns} for line in picked]
-    determinant, inverse = scaled_inverse(chosen, found.columns, base)
-    zero = LaurentPolynomial((), 0, over)
-    vector = {free: determinant}
-    for j, line in zip(found.columns, inverse, strict=True):
-        total = zero
-        for f, row in zip(line, picked, strict=True):
-            if free in row:
-                total = subtract_product(total, f, row[free])
-        if total:
-            vector[j] = total
-    divisor = gcd_of(vector.values(), over)
-    return {j: f.exact_division(divisor) for j, f in vector.items()}
 
 
 def _reduce(vector: Row, subtract: Callable[[int, LaurentPolynomial, int], None]) -> int:

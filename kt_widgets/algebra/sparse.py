@@ -11,7 +11,7 @@ from heapq import heapify, heappop, heappush
 from typing import NamedTuple, TypeAlias
 
 from kt_widgets.algebra.flint_rings import FlintPolynomial, Ring
-from kt_widgets.algebra.laurent import LaurentPolynomial, subtract_product
+from kt_widgets.algebra.laurent import LaurentPolynomial, gcd_of, subtract_product
 
 __all__ = [
     "FractionFree",
@@ -20,6 +20,7 @@ __all__ = [
     "Rows",
     "eliminate_units",
     "fraction_free",
+    "kernel_vector",
     "permutation_sign",
     "scaled_inverse",
     "subtract_line",
@@ -195,7 +196,7 @@ def fraction_free(rows: Sequence[Row], columns: Sequence[int], base: Ring) -> Fr
 def scaled_inverse(
     rows: Sequence[Row], columns: Sequence[int], base: Ring
 ) -> tuple[LaurentPolynomial, list[list[LaurentPolynomial]]]:
-    """For a nonsingular square matrix A with these columns: d = det A up to a unit, and X with A X = X A = d.
+    """For the nonsingular A in these columns of the rows: d = det A up to a unit, X with A X = X A = d.
 
     Fraction-free Gauss-Jordan elimination of A beside an identity; it divides exactly as in `fraction_free`.
 
@@ -207,7 +208,7 @@ def scaled_inverse(
     """
     size = len(columns)
     zero = base.zero
-    lows = [min(f.lowest for f in row.values()) for row in rows]
+    lows = [min(row[j].lowest for j in columns if j in row) for row in rows]
     dense: list[list[FlintPolynomial]] = [
         [row[j].shifted(-low) if j in row else zero for j in columns]
         + [base.one if k == i else zero for k in range(size)]
@@ -235,6 +236,35 @@ def scaled_inverse(
         for line in dense
     ]
     return determinant, inverse
+
+
+def kernel_vector(rows: Sequence[Row], columns: Sequence[int], base: Ring) -> Row | None:
+    """A vector of gcd 1 that the matrix sends to 0, by column; None if its columns are independent.
+
+    Examples
+    --------
+    >>> from kt_widgets.algebra.flint_rings import ring
+    >>> f = LaurentPolynomial.parse("1 - t")
+    >>> kernel_vector([{0: f, 1: f * f}], [0, 1], ring("Z"))
+    {1: LaurentPolynomial('-1'), 0: LaurentPolynomial('1 - t')}
+    """
+    found = fraction_free(rows, columns, base)
+    free = next((j for j in columns if j not in found.columns), None)
+    if free is None:
+        return None
+    picked = [rows[i] for i in found.rows]
+    determinant, inverse = scaled_inverse(picked, found.columns, base)
+    vector = {free: determinant}
+    zero = determinant - determinant
+    for j, line in zip(found.columns, inverse, strict=True):
+        total = zero
+        for f, row in zip(line, picked, strict=True):
+            if free in row:
+                total = subtract_product(total, f, row[free])
+        if total:
+            vector[j] = total
+    divisor = gcd_of(vector.values(), base.name)
+    return {j: f.exact_division(divisor) for j, f in vector.items()}
 
 
 def permutation_sign(images: Sequence[int]) -> int:
