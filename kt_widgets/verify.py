@@ -79,6 +79,7 @@ __all__ = [
     "SECTIONS",
     "VERSION",
     "main",
+    "results",
     "verify",
 ]
 
@@ -102,7 +103,7 @@ FIELDS: tuple[Ring, ...] = ("Q", 2, 3, 5)
 
 MAX_BYTES = 200_000_000
 """Largest file that is read."""
-MAX_CROSSINGS = 300
+MAX_CROSSINGS = 100
 """Most crossings, most components without crossings and most strands of a braid."""
 MAX_EXPONENT = 10**6
 """Largest exponent of t, up to sign."""
@@ -172,6 +173,7 @@ def _show(f: Poly) -> str:
     text = ""
     for e in sorted(f):
         size = str(abs(f[e])) if abs(f[e]) != 1 or not e else ""
+        size += " " if e and "/" in size else ""
         power = "" if e == 0 else "t" if e == 1 else f"t^{e}"
         sign = "-" if f[e] < 0 else "" if not text else "+"
         text += f" {sign} {size}{power}" if text else f"{sign}{size}{power}"
@@ -667,7 +669,7 @@ def _planar(d: Dossier) -> str:
     if sorted(edge for arc in drawn for edge in arc) != sorted(after):
         raise Refusal("diagram.arcs", "each edge lies in one arc")
     total = len(components) + diagram.circles
-    return f"planar: {count} crossing(s), {faces} face(s), {len(drawn)} arc(s); {total} component(s)"
+    return f"planar; crossings {count}, faces {faces}, arcs {len(diagram.arcs)}, components {total}"
 
 
 def _reduced(word: Word) -> Word:
@@ -711,7 +713,7 @@ def _presentation(d: Dossier) -> str:
         wrong = [i for i, (p, q) in enumerate(zip(d.peripheral, pairs, strict=False), 1) if p != q]
         place = f"presentation.peripheral[{min(wrong, default=len(pairs))}]"
         raise Refusal(place, "the meridian and the longitude of each component are expected")
-    return f"{len(d.relators)} Wirtinger relator(s) and {len(pairs)} longitude(s), read from the diagram"
+    return "the Wirtinger relators, meridians and longitudes are those of the diagram"
 
 
 def _chains(d: Dossier) -> str:
@@ -748,7 +750,7 @@ def _homology(d: Dossier) -> str:
     moved = _product(d.kernel_inverse, d.boundary2)
     lower = {(i - 1, j): f for (i, j), f in moved.entries.items() if i > 1}
     _compare("homology.h1_relations", d.h1_relations, Matrix(g - 1, moved.columns, lower))
-    return f"H_0 = Z[t,1/t]/({_show(d.h0)}); a basis of {g - 1} 1-cycle(s), with the relations of H_1"
+    return f"H_0 = Z[t,1/t]/({_show(d.h0)}); the 1-cycles have a basis of {g - 1}; relations of H_1"
 
 
 def _field(d: Dossier, s: Smith) -> str:
@@ -776,7 +778,8 @@ def _field(d: Dossier, s: Smith) -> str:
     _compare(f"{place}.cycles", s.cycles, cycles)
     name = f"F_{p}" if p else "Q"
     summands = [f"{name}[t,1/t]/({_show(f)})" if f else f"{name}[t,1/t]" for f in s.factors]
-    return f"over {name}, H_1 = {' + '.join(summands) or '0'}, with cycles that generate it"
+    cycles = "with cycles that generate the summands" if summands else "by a Smith form"
+    return f"over {name}, H_1 = {' + '.join(summands) or '0'}, {cycles}"
 
 
 def _elimination(d: Dossier) -> str:
@@ -787,7 +790,7 @@ def _elimination(d: Dossier) -> str:
     blocks.update({(pivots + i, pivots + j): f for (i, j), f in d.core.entries.items()})
     form = _product(_product(d.P, d.boundary2), d.Q)
     _compare("ideals: P boundary2 Q", form, Matrix(form.rows, form.columns, blocks))
-    return f"boundary2 is equivalent to {pivots} unit(s) and a core of {d.core.rows} x {d.core.columns}"
+    return f"boundary2 is equivalent to {pivots} times 1 and a core of {d.core.rows} x {d.core.columns}"
 
 
 class _Minors:
@@ -890,7 +893,7 @@ def _ideal(d: Dossier, ideal: Ideal, minors: _Minors) -> str:
             raise Refusal(where, f"the sum is {_show(total)}, the basis element {_show(f)}")
     _canonical(ideal.basis, place)
     name = f"E_{ideal.k} = {_show_ideal(ideal.basis)}"
-    return f"{name}: the {len(found)} nonzero minor(s) of size {size} and the basis generate each other"
+    return f"{name}: this canonical basis and the {len(found)} nonzero minors generate each other"
 
 
 def _ideals(d: Dossier) -> str:
@@ -902,9 +905,8 @@ def _ideals(d: Dossier) -> str:
         raise Refusal(
             "ideals.alexander", "the ideals for k = 1, 2, ... up to the first unit ideal are expected"
         )
-    return (
-        f"{len(d.ideals)} Alexander ideal(s), up to the first {'with too many minors' if stopped else '(1)'}"
-    )
+    end = "where the minors become too many" if stopped else "the first unit ideal"
+    return f"the Alexander ideals are listed up to {end}"
 
 
 def _polynomial(d: Dossier) -> str:
@@ -920,7 +922,7 @@ def _polynomial(d: Dossier) -> str:
     return f"the Alexander polynomial is {_show(f)}, up to units"
 
 
-def _results(data: Any) -> Iterator[tuple[str, str, bool]]:
+def results(data: Any) -> Iterator[tuple[str, str, bool]]:
     """Name, sentence and outcome of each check."""
     try:
         dossier = _read(data)
@@ -963,7 +965,7 @@ def verify(data: Any) -> list[str]:
     >>> verify({"format": "kt_widgets", "version": 1, "kind": "dossier"})
     ['dossier: key "data" is missing']
     """
-    return [sentence for _, sentence, holds in _results(data) if not holds]
+    return [sentence for _, sentence, holds in results(data) if not holds]
 
 
 def _pairs(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
@@ -993,7 +995,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print(f"{arguments[0]}: cannot be read: {error}", file=sys.stderr)
         return 2
     outcomes = []
-    for name, sentence, holds in _results(data):
+    for name, sentence, holds in results(data):
         print(f"{'holds' if holds else 'FAILS'}  {name}: {sentence}")
         outcomes.append(holds)
     failed = outcomes.count(False)
