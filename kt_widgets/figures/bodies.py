@@ -229,8 +229,8 @@ def facts(cover: Cover, over: RingName = "Z") -> list[Fact]:
     ...     print(fact.name, "|", fact.value, fact.note)
     H₀ | Z[t, 1/t]/(−1 + t)
     order of H₁ | 1 − t + t² up to units
-    E₁ | (1 − t + t²)
-    E₂ | (1)
+    ideal E₁ | (1 − t + t²)
+    ideal E₂ | (1)
     H₂ | 0
     >>> print(facts(x, "Q")[1].value)
     Q[t, 1/t]/(1 − t + t²)
@@ -253,7 +253,11 @@ def facts(cover: Cover, over: RingName = "Z") -> list[Fact]:
             k, ideal = k + 1, cover.alexander_ideal(k + 1)
             if not ideal.is_zero():
                 found.append(
-                    Fact(name_text(f"E{k}", "unicode"), ideal.text("unicode"), f"E_{{{k}}} = {ideal.latex()}")
+                    Fact(
+                        f"ideal {name_text(f'E{k}', 'unicode')}",
+                        ideal.text("unicode"),
+                        f"E_{{{k}}} = {ideal.latex()}",
+                    )
                 )
     else:
         summands = h.summands()

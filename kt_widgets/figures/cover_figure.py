@@ -466,7 +466,7 @@ def cover(
     >>> from kt_widgets.groups.presentations import Presentation
     >>> drawing = cover(Cover(Presentation.parse("< a, b | a b a = b a b >")))
     >>> drawing
-    Drawing('infinite cyclic cover', ...)
+    Drawing('infinite cyclic cover', 241 x 73.26 pt)
     >>> [item.role for item in drawing.scene.at("vertex:3")]
     ['dropline', 'rail', 'vertex', 'label']
     """

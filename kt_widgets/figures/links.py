@@ -69,18 +69,9 @@ def links(cover: Cover, diagram: Diagram | None = None) -> dict[str, list[str]]:
         crossing = presentation.place_of("relator", r)
         for v in cover.visits(r):
             arc = presentation.place_of("generator", v.generator)
-            entry = Place("entry", (2, rows[v.generator], r))
-            parts = (
-                v.letter,
-                v.edge,
-                v.cell,
-                entry,
-                f"relator:{r}",
-                f"generator:{v.generator}",
-                crossing,
-                arc,
-            )
-            together.add(tuple(str(part) for part in parts if part))
+            names = (f"entry:2:{rows[v.generator]}:{r}", f"relator:{r}", f"generator:{v.generator}")
+            places = (v.letter, v.edge, v.cell, crossing, arc)
+            together.add((*names, *(str(place) for place in places if place)))
             together.update((str(v.edge), f"vertex:{k}") for k in {v.start, v.end})
     if diagram is not None:
         together.update((f"component:{c.number}", f"arc:{arc}") for c in diagram.components for arc in c.arcs)

@@ -58,7 +58,7 @@ def chain_text(coefficients: Iterable[tuple[str, Terms]], style: Style = "unicod
         if len(terms) > 1:
             factor = f"({polynomial_text(terms, style)}) "
         else:
-            text = polynomial_text({e: abs(c) for e, c in terms.items()}, style)
+            text = polynomial_text({e: -c if negative else c for e, c in terms.items()}, style)
             factor = "" if text == "1" else f"{text} "
         minus = "−" if style == "unicode" else "-"
         sign = (f" {minus} " if negative else " + ") if pieces else (minus if negative else "")

@@ -33,7 +33,7 @@ def lines_scene(lines: Sequence[str], title: str, preset: str = "screen") -> Sce
     Examples
     --------
     >>> lines_scene(["$a b$", "$b$"], "relators")
-    Scene(2 items, 66.2 x 58.5 pt, 'relators')
+    Scene(2 items, 47.45 x 68.4 pt, 'relators')
     """
     look = preset_named(preset)
     size, step = label_size("formula", look), 1.6 * look.formula

@@ -27,7 +27,7 @@ class ExplanationView(View):
     >>> view = ExplanationView("< t, x | t x t^-1 = x^2 >")
     >>> view.selected = "entry:2:2:1"
     >>> view.snapshot()
-    Drawing('entry of boundary 2 in row x and column r1', 640 x 136.5 pt)
+    Drawing('entry of boundary 2 in row x and column r1', 440.7 x 156 pt)
     """
 
     def make_body(self, subject: Subject) -> str:

@@ -18,7 +18,7 @@ class RelatorView(View):
     Examples
     --------
     >>> RelatorView("< a, b | a b a = b a b >").snapshot()
-    Drawing('presentation', 180.1 x 68.4 pt)
+    Drawing('presentation', 174.47 x 68.4 pt)
     """
 
     def make_body(self, subject: Subject) -> str:

@@ -78,8 +78,8 @@ class View(anywidget.AnyWidget):
     _css = (_STATIC / "view.css").read_text("utf-8")
 
     body = traitlets.Unicode().tag(sync=True)
-    links = traitlets.Dict().tag(sync=True)
-    steps = traitlets.List().tag(sync=True)
+    links: Any = traitlets.Dict().tag(sync=True)
+    steps: Any = traitlets.List().tag(sync=True)
     focus = traitlets.Unicode().tag(sync=True)
     selected = traitlets.Unicode().tag(sync=True)
     step = traitlets.Int(0).tag(sync=True)

@@ -24,7 +24,7 @@ __all__ = ["Workbench"]
 _WIDE_MATRIX = 6  # more columns than this take the whole width
 
 
-class Workbench(ipywidgets.Box):
+class Workbench(ipywidgets.Box):  # type: ignore[misc]  # ipywidgets has no types
     """The linked views of a diagram or a presentation, with a line of text to enter another one.
 
     Pointing at an arc, a crossing, a letter, an edge or an entry lights up all that belongs to it in every
@@ -52,7 +52,7 @@ class Workbench(ipywidgets.Box):
     >>> bench = Workbench("braid 1 1 1")
     >>> bench.line.text = "braid 1 2 x"
     >>> bench.line.error
-    ...
+    "'x' is not known after braid (at line 1, column 11); accepted: strands"
     >>> bench
     Workbench(Diagram(3 crossings, 1 component, 'braid 1 1 1'))
     >>> bench.close()

@@ -125,6 +125,10 @@ def lab(chromium: Any, tmp_path_factory: pytest.TempPathFactory) -> Iterator[Lab
     with socket.socket() as probe:
         probe.bind(("127.0.0.1", 0))
         port = probe.getsockname()[1]
+    settings = home / "settings" / "@jupyterlab" / "apputils-extension"
+    settings.mkdir(parents=True)
+    # No question about news in a corner of the page.
+    (settings / "notification.jupyterlab-settings").write_text('{"fetchNews": "false"}')
     own = {f"JUPYTER_{kind}_DIR": str(home / kind.lower()) for kind in ("CONFIG", "DATA", "RUNTIME")}
     own |= {
         "JUPYTERLAB_SETTINGS_DIR": str(home / "settings"),
@@ -137,7 +141,7 @@ def lab(chromium: Any, tmp_path_factory: pytest.TempPathFactory) -> Iterator[Lab
         *(sys.executable, "-m", "jupyterlab", "--no-browser"),
         *(f"--port={port}", "--ServerApp.port_retries=0"),
         *(f"--ServerApp.root_dir={folder}", f"--IdentityProvider.token={TOKEN}"),
-        *("--LabApp.expose_app_in_browser=True", "--LabApp.news_url=None"),
+        "--LabApp.expose_app_in_browser=True",
         "--LabApp.check_for_updates_class=jupyterlab.NeverCheckForUpdate",
     ]
     if hasattr(os, "geteuid") and os.geteuid() == 0:

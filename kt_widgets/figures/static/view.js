@@ -339,6 +339,12 @@ class View {
   }
 
   key(event) {
+    if (event.key === "Enter" && event.target.matches("form[data-set] input")) {
+      // A notebook may keep Enter from submitting a form.
+      event.preventDefault();
+      event.target.form.requestSubmit();
+      return;
+    }
     const part = event.target.closest?.("[data-place]");
     if (!part || !this.stops.includes(part) || event.ctrlKey || event.metaKey || event.altKey) return;
     const next = this.neighbour(part, event.key);
