@@ -268,10 +268,7 @@ class ChainComplex(Portable, kind="chain complex"):
         """
         if n != 1:
             raise AlgebraError(f"relative H_{n} is not offered", accepted="n = 1")
-        identity = LaurentMatrix.identity(len(self.generators), self.ring)
-        return Module(
-            self.boundary2, basis=identity, ambient=self.generators, title="H_1 relative to the vertices"
-        )
+        return Module(self.boundary2, ambient=self.generators, title="H_1 relative to the vertices")
 
     @cached_property
     def _ranks(self) -> tuple[int, int]:

@@ -161,6 +161,24 @@ def test_homology_of_the_trefoil():
         c.relative_homology(0)
 
 
+def test_summands_carry_cycles():
+    c = ChainComplex.from_matrices("t - 1, t - 1", "1 - t + t^2; -1 + t - t^2", generators=["a", "b"])
+    h = c.homology(1).over("Q")
+    (summand,) = h.summands()
+    assert summand.names == ("a", "b")
+    assert summand.factor == LaurentPolynomial.parse("1 - t + t^2", "Q")
+    column = LaurentMatrix([[f] for f in summand.cycle], "Q")
+    assert c.over("Q").boundary(1) @ column == LaurentMatrix.zero(1, 1, "Q")
+    assert h.certificate().verify()
+
+
+def test_changing_the_ring_before_or_after_homology_can_differ():
+    # H_0 is Z[t,1/t]/2; its 2-torsion makes H_1 of the reduced complex free of rank one, H_1 itself being 0.
+    c = without_cells(LaurentMatrix([[2]]))
+    assert c.homology(1).over(2).invariant_factors() == ()
+    assert c.over(2).homology(1).invariant_factors() == (0,)
+
+
 def test_second_homology_counts_redundant_cells():
     c = ChainComplex.from_matrices("t - 1, t - 1", "1 - t + t^2, 1 - t + t^2; -1 + t - t^2, -1 + t - t^2")
     assert c.rank(2) == 1

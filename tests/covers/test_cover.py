@@ -122,6 +122,7 @@ def test_large_weights_are_refused():
         Cover(Presentation.parse("< x | >"), {"x": 10**9})
 
 
+@few
 @given(st.integers(-6, 6), st.integers(-6, 6))
 def test_sheets_are_the_components_of_the_cover(a, b):
     x = Cover(Presentation.parse("< a, b | [a, b] >"), {"a": a, "b": b})
@@ -133,6 +134,7 @@ def test_sheets_are_the_components_of_the_cover(a, b):
         assert networkx.number_weakly_connected_components(x.window(-40, 40)) == x.sheets
 
 
+@few
 @given(st.integers(-4, 4), st.integers(-3, 3), st.integers(0, 8))
 def test_windows_hold_the_edges_with_both_ends_inside(weight, lo, length):
     hi = lo + length

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import Counter
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from kt_widgets.errors import AlgebraError, LimitError
@@ -14,6 +14,7 @@ from kt_widgets.groups.words import Word
 from kt_widgets.places import Place
 
 NAMES = ("a", "b", "c")
+few = settings(deadline=None, max_examples=50)
 letters = st.tuples(st.sampled_from(NAMES), st.sampled_from([1, -1]))
 words = st.lists(letters, max_size=10).map(lambda chosen: Word(tuple(chosen)))
 weights = st.fixed_dictionaries({name: st.integers(-3, 3) for name in NAMES})
@@ -48,6 +49,7 @@ def naive_derivative(letters, name):
     return terms
 
 
+@few
 @given(words)
 def test_fundamental_identity(r):
     """sum of (dr/da)(a - 1) is r - 1 (R. H. Fox, Free differential calculus I, Ann. of Math. 57 (1953))."""
@@ -58,6 +60,7 @@ def test_fundamental_identity(r):
     assert collect(terms) == collect([(1, r.letters), (-1, ())])
 
 
+@few
 @given(words, words)
 def test_the_derivative_is_the_naive_one_and_obeys_the_product_rule(u, v):
     for name in NAMES:
@@ -69,6 +72,7 @@ def test_the_derivative_is_the_naive_one_and_obeys_the_product_rule(u, v):
         assert product == collect(left + right)
 
 
+@few
 @given(words, weights, st.integers(-5, 5))
 def test_visits_are_the_abelianised_derivative(r, weights, start):
     seen = {name: Counter() for name in NAMES}
@@ -81,6 +85,7 @@ def test_visits_are_the_abelianised_derivative(r, weights, start):
         assert {k: c for k, c in seen[name].items() if c} == {k: c for k, c in expected.items() if c}
 
 
+@few
 @given(words, weights, st.integers(-5, 5))
 def test_visits_trace_a_path_along_edges(r, weights, start):
     here = start

@@ -150,6 +150,7 @@ def test_simplified_does_not_let_words_explode():
     assert sum(map(len, q.relators)) <= limit
 
 
+@few
 @given(st.integers(1, 3))
 def test_without_relator(gone):
     p = Presentation.parse("< a, b | a b, a^2, b^3 >")

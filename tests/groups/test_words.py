@@ -6,13 +6,14 @@ import copy
 import pickle
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from kt_widgets.errors import AlgebraError, LimitError, ParseError
 from kt_widgets.groups.words import Word
 from kt_widgets.text.portable import read
 
+few = settings(deadline=None, max_examples=50)
 letters = st.tuples(st.sampled_from(["a", "b", "x1"]), st.sampled_from([1, -1]))
 words = st.lists(letters, max_size=10).map(lambda chosen: Word(tuple(chosen)))
 
@@ -38,6 +39,7 @@ def cancel(letters):
     return tuple(letters)
 
 
+@few
 @given(words, words)
 def test_the_operations_are_those_of_the_free_group(u, v):
     assert u.reduced().letters == cancel(u.letters)
@@ -48,6 +50,7 @@ def test_the_operations_are_those_of_the_free_group(u, v):
     assert u**0 == Word()
 
 
+@few
 @given(words)
 def test_cyclic_reduction_is_a_conjugate_without_inverse_ends(w):
     core = w.cyclically_reduced()
@@ -58,12 +61,14 @@ def test_cyclic_reduction_is_a_conjugate_without_inverse_ends(w):
     assert Word(reduced[:ends]) * core * Word(reduced[:ends]).inverse() == w.reduced()
 
 
+@few
 @given(words, st.fixed_dictionaries({"a": words, "b": words}))
 def test_substitution_is_a_homomorphism(w, images):
     values = {**PERMUTATIONS, **{name: permutation(image) for name, image in images.items()}}
     assert permutation(w.substitute(images)) == permutation(w, values)
 
 
+@few
 @given(words)
 def test_words_travel(w):
     assert Word.parse(str(w)) == w
