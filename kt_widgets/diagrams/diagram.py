@@ -5,8 +5,10 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
 from functools import cached_property
-from typing import TYPE_CHECKING, Any
+from typing import Any
 
+from kt_widgets.algebra.laurent import LaurentPolynomial
+from kt_widgets.covers.cover import Cover
 from kt_widgets.diagrams.braid import read_braid
 from kt_widgets.diagrams.dowker import dowker_of, read_dowker
 from kt_widgets.diagrams.entries import circle_count, whole
@@ -19,10 +21,6 @@ from kt_widgets.errors import DiagramError
 from kt_widgets.groups.presentations import Presentation
 from kt_widgets.groups.words import Word
 from kt_widgets.text.portable import Portable
-
-if TYPE_CHECKING:
-    from kt_widgets.algebra.laurent import LaurentPolynomial
-    from kt_widgets.covers.cover import Cover
 
 __all__ = ["Arc", "Component", "Crossing", "Diagram", "Face", "Relabelling"]
 
@@ -553,8 +551,6 @@ class Diagram(Portable, kind="diagram"):
 
     @cached_property
     def _cover(self) -> Cover:
-        from kt_widgets.covers.cover import Cover
-
         return Cover(self._wirtinger)
 
     def cover(self) -> Cover:
