@@ -13,8 +13,8 @@ from kt_widgets import figures
 __all__ = ["PICTURES", "picture_of", "register"]
 
 PICTURES: dict[tuple[str, str], Callable[[Any], Any]] = {
-    ("kt_widgets.diagrams.diagram", "Diagram"): lambda d: figures.diagram(d),
-    ("kt_widgets.covers.cover", "Cover"): lambda x: figures.cover(x),
+    ("kt_widgets.diagrams.diagram", "Diagram"): lambda d: figures.diagram(d, preset="screen"),
+    ("kt_widgets.covers.cover", "Cover"): lambda x: figures.cover(x, preset="screen"),
 }
 """By module and name of a type, the figure that shows its values."""
 

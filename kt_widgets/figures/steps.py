@@ -97,7 +97,15 @@ def steps(cover: Cover) -> list[Step]:
         written = f"{name_text(f'r{r}', 'unicode')} = {word_text(word, 'unicode')}, lifted from e"
         sums: dict[str, dict[int, int]] = {}
         found.append(
-            Step(cell=f"cell:{r}:0", letter="", edge="", entry="", caption=written, sum={}, sum_text=cell)
+            Step(
+                cell=f"cell:{r}:0",
+                letter="",
+                edge="",
+                entry="",
+                caption=written,
+                sum={},
+                sum_text="nothing read yet",
+            )
         )
         visits = cover.visits(r)
         for v in visits:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field, replace
 from functools import cached_property
 from typing import TypeAlias
 
@@ -30,6 +30,7 @@ class Subject:
 
     cover: Cover
     diagram: Diagram | None = None
+    typed: str = field(default="", compare=False)
 
     @classmethod
     def of(cls, value: Viewable) -> Subject:
@@ -52,7 +53,8 @@ class Subject:
             case str():
                 text = value.strip()
                 presented = text.startswith(("<", "⟨", "\\langle"))
-                return cls.of(Presentation.parse(text) if presented else Diagram.parse(text))
+                read = Presentation.parse(text) if presented else Diagram.parse(text)
+                return replace(cls.of(read), typed=text)
         raise KtError(
             f"a {type(value).__name__} cannot be shown in linked views",
             accepted="a Diagram, a Presentation, a Cover, or a line of text",
@@ -60,8 +62,8 @@ class Subject:
 
     @property
     def text(self) -> str:
-        """The line that can be typed to get this subject, its weights apart."""
-        return self.diagram.source if self.diagram else str(self.cover.presentation)
+        """The line that was or could be typed to get this subject, its weights apart."""
+        return self.typed or (self.diagram.source if self.diagram else str(self.cover.presentation))
 
     @cached_property
     def links(self) -> dict[str, list[str]]:

@@ -129,23 +129,16 @@ class Workbench(ipywidgets.Box):  # type: ignore[misc]  # ipywidgets has no type
         """Beside the diagram there is room for the relators and a narrow matrix."""
         wide = len(subject.cover.presentation.boundary_words) > _WIDE_MATRIX
         self.boundary2.add_class("kt-wide") if wide else self.boundary2.remove_class("kt-wide")
+        drawn, below = (self.diagram,) if subject.diagram else (), (self.boundary2,) if wide else ()
         self._words.children = (self.relators,) if wide else (self.relators, self.boundary2)
         self._results.children = (self.homology, self.boundary1)
-        below = (self.boundary2,) if wide else ()
-        self.children = (
-            self.line,
-            self.diagram,
-            self._words,
-            self.cover,
-            *below,
-            self.explanation,
-            self._results,
-        )
+        parts = (self.line, *drawn, self._words, self.cover, *below, self.explanation, self._results)
+        self.children = parts
 
     def snapshot(self) -> Drawing:
         """A plain picture of the views, one below the other, for viewers that run no scripts."""
         shown = (self.diagram, self.relators, self.cover, self.boundary2, self.homology)
-        scenes = [view.snapshot().scene for view in shown if view is not self.diagram or self.subject.diagram]
+        scenes = [view.snapshot().scene for view in shown if self.subject.diagram or view is not self.diagram]
         return Drawing(stacked(scenes, "diagram, relators, cover, boundary matrix and homology"))
 
     def __repr__(self) -> str:
