@@ -136,7 +136,7 @@ def test_links_mirror_and_reverse(d: Diagram) -> None:
     ideal = d.cover().alexander_ideal(1)
     for other in (d.mirror(), d.reverse()):
         assert other.cover().alexander_ideal(1) == ideal.conjugate()
-        assert d.alexander_polynomial().conjugate().normal_form() == other.alexander_polynomial()
+        assert other.cover().order() == d.cover().order().conjugate().normal_form()
 
 
 @given(knots(max_letters=7))

@@ -29,8 +29,8 @@ def both_codes(knot: dict[str, Any]) -> list[Diagram]:
 @pytest.mark.slow
 @pytest.mark.parametrize("ring", ["Q", 2, 3])
 def test_longitudes_bound_in_the_cover(ring: RingName) -> None:
-    # Dividing by one more column leaves a module over a principal ideal domain isomorphic only if that column is
-    # in the image already (a surjection between isomorphic finitely generated modules is injective).
+    # Dividing by one more column leaves a module over a principal ideal domain isomorphic only if that column
+    # is in the image already (a surjection between isomorphic finitely generated modules is injective).
     wrong = []
     for knot in KNOTS:
         for d in both_codes(knot):
@@ -47,8 +47,8 @@ def test_longitudes_bound_in_the_cover(ring: RingName) -> None:
 def test_longitudes_commute_with_meridians_in_finite_quotients() -> None:
     wrong = []
     for knot in KNOTS:
-        for d in both_codes(knot):
-            found = list(islice(quotients(d.wirtinger()), 300))
-            if not all(commute(d.meridian(), d.longitude(), images) for images in found):
-                wrong.append(knot["name"])
+        d = Diagram.from_planar_diagram(knot["planar_diagram"])
+        found = islice(quotients(d.wirtinger()), 50)
+        if not all(commute(d.meridian(), d.longitude(), images) for images in found):
+            wrong.append(knot["name"])
     assert wrong == []
