@@ -151,9 +151,9 @@ def lab_arguments(folder: Path, options: Sequence[str], *, browser: bool, root: 
 
 
 def _lab(options: Sequence[str]) -> int:
-    from importlib.util import find_spec
+    from importlib import import_module, util
 
-    if find_spec("jupyterlab") is None:
+    if util.find_spec("jupyterlab") is None:
         print(
             f"kt-widgets: JupyterLab is not installed; install it with: "
             f"{sys.executable} -m pip install 'kt-widgets[lab]'",
@@ -169,9 +169,10 @@ def _lab(options: Sequence[str]) -> int:
     print("JupyterLab prints its address below; stop it with Ctrl-C.", flush=True)
     root = hasattr(os, "geteuid") and os.geteuid() == 0
     browser = _can_open_browser(os.environ, sys.platform)
-    from jupyterlab.labapp import LabApp
-
-    LabApp.launch_instance(lab_arguments(folder, options, browser=browser, root=root))
+    # In this process, so that Ctrl-C and the terminal are JupyterLab's.
+    import_module("jupyterlab.labapp").LabApp.launch_instance(
+        lab_arguments(folder, options, browser=browser, root=root)
+    )
     return 0
 
 

@@ -778,8 +778,8 @@ def _field(d: Dossier, s: Smith) -> str:
     _compare(f"{place}.cycles", s.cycles, cycles)
     name = f"F_{p}" if p else "Q"
     summands = [f"{name}[t,1/t]/({_show(f)})" if f else f"{name}[t,1/t]" for f in s.factors]
-    cycles = "with cycles that generate the summands" if summands else "by a Smith form"
-    return f"over {name}, H_1 = {' + '.join(summands) or '0'}, {cycles}"
+    how = "with cycles that generate the summands" if summands else "by a Smith form"
+    return f"over {name}, H_1 = {' + '.join(summands) or '0'}, {how}"
 
 
 def _elimination(d: Dossier) -> str:

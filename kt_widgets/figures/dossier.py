@@ -28,6 +28,8 @@ from kt_widgets.text.printing import polynomial_text
 __all__ = ["dossier", "page"]
 
 DATA = "dossier.json"
+LINE = 100
+"""Longest value of the data file that stands on one line."""
 
 
 def dossier(d: Diagram, out: str | os.PathLike[str]) -> tuple[Path, ...]:
@@ -85,7 +87,7 @@ def _contents(d: Diagram) -> dict[str, bytes]:
     drawings = {"diagram": diagram_drawing(d), "cover": cover(d.cover())}
     contents = {
         "dossier.html": page(evidence).encode(),
-        DATA: _laid_out(json.loads(evidence.to_json())).encode(),
+        DATA: (_laid_out(json.loads(evidence.to_json())) + "\n").encode(),
         "verify.py": Path(verifier.__file__).read_bytes(),
     }
     for name, drawing in drawings.items():
@@ -120,17 +122,18 @@ def _is_dossier(path: Path) -> bool:
     )
 
 
-def _laid_out(value: Any, depth: int = 4, indent: str = "") -> str:
-    """JSON text with a line for each item down to a depth, so that it can be read and compared."""
-    if not depth or not value or not isinstance(value, dict | list):
-        return json.dumps(value, sort_keys=True)
+def _laid_out(value: Any, indent: str = "") -> str:
+    """JSON text in which what is short stands on one line, so that it can be read and compared."""
+    text = json.dumps(value, sort_keys=True)
+    if len(text) <= LINE or not isinstance(value, dict | list):
+        return text
     inner = indent + " "
     if isinstance(value, dict):
-        items = [f"{json.dumps(key)}: {_laid_out(value[key], depth - 1, inner)}" for key in sorted(value)]
+        items = [f"{json.dumps(key)}: {_laid_out(value[key], inner)}" for key in sorted(value)]
     else:
-        items = [_laid_out(item, depth - 1, inner) for item in value]
+        items = [_laid_out(item, inner) for item in value]
     left, right = "{}" if isinstance(value, dict) else "[]"
-    return f"{left}\n{inner}" + f",\n{inner}".join(items) + f"\n{indent}{right}" + ("" if indent else "\n")
+    return f"{left}\n{inner}" + f",\n{inner}".join(items) + f"\n{indent}{right}"
 
 
 PAGE = """<!DOCTYPE html>

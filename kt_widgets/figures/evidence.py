@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import hashlib
 import json
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
 from math import comb
@@ -203,22 +203,38 @@ def _homology(chains: ChainComplex) -> dict[str, Any]:
 
 
 def _field(chains: ChainComplex, ring: str | int) -> dict[str, Any]:
-    form = smith_form(chains.homology(1).presentation_matrix().change_ring(ring))
-    size = form.matrix.shape[0]
-    zero = LaurentPolynomial((), over=ring)
+    module = chains.homology(1).over(ring)
+    form = smith_form(module.presentation_matrix())
+    size, columns = form.matrix.shape
+    zero, one = LaurentPolynomial((), over=ring), LaurentPolynomial.constant(1, ring)
     whole = [*form.diagonal, *[zero] * (size - len(form.diagonal))]
     kept = [i for i, f in enumerate(whole) if f != 1]
-    generators = form.U_inverse.submatrix(range(size), kept)
+    cycles = chains.cycles().change_ring(ring) @ form.U_inverse
+    # The generators that are shown are unit multiples of those that the Smith form gives: scale it to them.
+    units = [one] * size
+    for i, summand in zip(kept, module.summands(), strict=True):
+        pairs = zip(cycles.column(i), summand.cycle, strict=True)
+        units[i] = next(f.unit_to(g) or one for f, g in pairs if f)
+    left, left_inverse = _diagonal(units, size, ring), _diagonal([u.inverse() for u in units], size, ring)
+    right, right_inverse = (
+        _diagonal(scales, columns, ring) for scales in (units, [u.inverse() for u in units])
+    )
     return {
         "ring": ring,
-        "U": _matrix(form.U),
-        "U_inverse": _matrix(form.U_inverse),
-        "V": _matrix(form.V),
-        "V_inverse": _matrix(form.V_inverse),
+        "U": _matrix(left_inverse @ form.U),
+        "U_inverse": _matrix(form.U_inverse @ left),
+        "V": _matrix(form.V @ right),
+        "V_inverse": _matrix(right_inverse @ form.V_inverse),
         "diagonal": [_polynomial(f) for f in form.diagonal],
         "invariant_factors": [_polynomial(whole[i]) for i in kept],
-        "cycles": _matrix(chains.cycles().change_ring(ring) @ generators),
+        "cycles": _matrix((cycles @ left).submatrix(range(cycles.shape[0]), kept)),
     }
+
+
+def _diagonal(scales: Sequence[LaurentPolynomial], size: int, ring: str | int) -> LaurentMatrix:
+    """A diagonal matrix of this size, filled up with 1."""
+    entries = {(i, i): scales[i] if i < len(scales) else 1 for i in range(size)}
+    return LaurentMatrix.from_entries(entries, (size, size), ring)
 
 
 def _ideals(boundary2: LaurentMatrix) -> dict[str, Any]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable
 
 from kt_widgets.algebra.matrix import LaurentMatrix
@@ -69,4 +70,12 @@ def _homology(x: Cover, ring: str | int) -> Iterable[str]:
     name = rf"\mathbb{{{ring}}}" if isinstance(ring, str) else rf"\mathbb{{F}}_{{{ring}}}"
     yield rf"\subsection*{{Over ${name}[t^{{\pm 1}}]$}}"
     for fact in facts(x, ring):
-        yield _fit(fact.latex + (rf" \quad\text{{({fact.note})}}" if fact.note else ""))
+        yield _fit(fact.latex + (rf" \quad\text{{({_words(fact.note)})}}" if fact.note else ""))
+
+
+def _words(note: str) -> str:
+    """A note with the symbols in it, such as a letter with an index, in LaTeX."""
+    return re.sub("([A-Z])([₀-₉]+)", lambda m: f"${m[1]}_{{{m[2].translate(_DIGITS)}}}$", note)
+
+
+_DIGITS = str.maketrans("₀₁₂₃₄₅₆₇₈₉", "0123456789")
