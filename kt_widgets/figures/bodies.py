@@ -269,7 +269,7 @@ def facts(cover: Cover, over: RingName = "Z") -> list[Fact]:
                 Fact(f"generator{which}", chain_text(parts), f"z_{{{i}}} = {chain_text(parts, 'latex')}")
             )
     free = [LaurentPolynomial(over=over)] * c.rank(2)
-    note = "of the presentation complex: each redundant relator adds a summand" if free else ""
+    note = "of the presentation complex: each redundant relator adds one summand" if free else ""
     return [*found, _sum_of_quotients("H₂", "H_2", free, over)._replace(note=note)]
 
 

@@ -15,6 +15,7 @@ from kt_widgets.figures.drawing import Drawing
 from kt_widgets.figures.lettering import extent
 from kt_widgets.figures.presets import Preset, label_size, preset_named
 from kt_widgets.figures.scene import Arrow, Dot, Item, Label, Point, Region, Scene, Stroke
+from kt_widgets.figures.tables import typeset
 from kt_widgets.groups.fox import Visit
 from kt_widgets.places import Place
 from kt_widgets.text.printing import name_text, word_text
@@ -30,7 +31,7 @@ MAX_WINDOW = 60
 _STEEPEST = math.radians(
     84
 )  # between a fan's outermost arc and the line; 90 degrees would touch the next fan
-_SAMPLES = 48
+_SAMPLES = 36
 _LONGEST = 12  # letters of a relator in the title
 
 Path = tuple[Point, ...]
@@ -486,5 +487,5 @@ def cover(
 def _title(x: Cover, relator: int) -> str:
     """The relator's word, cut short where it is long, and what is traced."""
     letters = [(v.generator, v.sign) for v in x.visits(relator)]
-    word = word_text(letters[:_LONGEST], "latex") + (r" \cdots" if len(letters) > _LONGEST else "")
-    return f"$r_{{{relator}}} = {word}$"
+    word = word_text(letters[:_LONGEST], "unicode") + (" …" if len(letters) > _LONGEST else "")
+    return typeset(f"{name_text(f'r{relator}', 'unicode')} = {word}")

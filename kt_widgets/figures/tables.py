@@ -16,15 +16,24 @@ _LINE = str.maketrans(_RAISED + _LOWERED, "-0123456789" * 2)
 
 
 def typeset(text: str) -> str:
-    """Unicode mathematics as the text of a label.
+    """Unicode mathematics, and words between it, as the text of a label.
+
+    Signs are taken one by one between spaces, so that spaces stay; more than one plain letter is a word.
 
     Examples
     --------
-    >>> typeset("1 − t⁻¹x₁₂")
-    '$1 − t^{-1}x_{12}$'
+    >>> typeset("order: 1 − t⁻¹ x₁₂")
+    'order: 1 − $t^{-1}$ $x_{12}$'
     """
-    text = re.sub(f"[{_RAISED}]+", lambda m: f"^{{{m[0].translate(_LINE)}}}", text)
-    return f"${re.sub(f'[{_LOWERED}]+', lambda m: f'_{{{m[0].translate(_LINE)}}}', text)}$"
+    return " ".join(_typeset(piece) for piece in text.split(" "))
+
+
+def _typeset(piece: str) -> str:
+    letters = piece.rstrip(":,")
+    if not any(sign.isalpha() for sign in piece) or (letters.isalpha() and len(letters) > 1):
+        return piece
+    raised = re.sub(f"[{_RAISED}]+", lambda m: f"^{{{m[0].translate(_LINE)}}}", piece)
+    return f"${re.sub(f'[{_LOWERED}]+', lambda m: f'_{{{m[0].translate(_LINE)}}}', raised)}$"
 
 
 def lines_scene(lines: Sequence[str], title: str, preset: str = "screen") -> Scene:
@@ -81,5 +90,5 @@ def table_scene(
         items.append(Label("row", text, (edge - 0.6 * size, y), "formula", anchor="right"))
         items += [Label("entry", cell, (x, y), "formula") for x, cell in zip(middles, row, strict=True)]
     for x in (edge, end):
-        items.append(Stroke("bar", ((x, first - 0.5 * step), (x, margin)), "strand"))
+        items.append(Stroke("bar", ((x, first - 0.5 * step), (x, margin)), "rail"))
     return Scene(tuple(items), end + margin, height, title, "", preset)

@@ -47,7 +47,8 @@ class HomologyView(View):
 
     def make_drawing(self, subject: Subject) -> Drawing:
         found = bodies.facts(subject.cover, self._chosen())
-        return Drawing(lines_scene([f"{typeset(f.name)}:  {typeset(f.value)}" for f in found], "homology"))
+        lines = [typeset(f"{f.name}: {f.value} {f.note}".rstrip()) for f in found]
+        return Drawing(lines_scene(lines, "homology"))
 
     def make_latex(self, subject: Subject) -> str:
         return f"${bodies.facts_latex(bodies.facts(subject.cover, self._chosen()))}$"

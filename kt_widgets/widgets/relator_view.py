@@ -18,7 +18,7 @@ class RelatorView(View):
     Examples
     --------
     >>> RelatorView("< a, b | a b a = b a b >").snapshot()
-    Drawing('presentation', 174.47 x 68.4 pt)
+    Drawing('presentation', 172.13 x 68.4 pt)
     """
 
     def make_body(self, subject: Subject) -> str:
@@ -27,8 +27,9 @@ class RelatorView(View):
     def make_drawing(self, subject: Subject) -> Drawing:
         p = subject.cover.presentation
         names = ", ".join(name_text(g, "unicode") for g in p.generators)
-        lines = [f"generators {typeset(names)}" if names else "no generators"]
-        lines += [typeset(f"r{r} = {word.text('unicode')}") for r, word in enumerate(p.boundary_words, 1)]
+        words = [word.text("unicode") for word in p.boundary_words]
+        lines = [typeset(f"generators {names or 'none'}")]
+        lines += [typeset(f"{name_text(f'r{r}', 'unicode')} = {word}") for r, word in enumerate(words, 1)]
         return Drawing(lines_scene(lines, "presentation"))
 
     def make_latex(self, subject: Subject) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import logging
+from base64 import b64encode
 from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
 from importlib.resources import files
@@ -48,12 +49,20 @@ def bundle(
     widget: ipywidgets.DOMWidget, drawing: Drawing, latex: str
 ) -> tuple[dict[str, Any], dict[str, Any]]:
     """The live view beside fallbacks for viewers that run no scripts: PNG, SVG, LaTeX if any, and text."""
-    data, metadata = drawing._repr_mimebundle_()
-    data = {**data, "text/plain": repr(widget)}
+    data: dict[str, Any] = {
+        "text/plain": repr(widget),
+        "image/svg+xml": drawing.svg(),
+        # Saved with every output, so no finer than a screen needs; black ink wants a light ground.
+        "image/png": b64encode(drawing.png(dpi=120)).decode(),
+        "application/vnd.jupyter.widget-view+json": {
+            "version_major": 2,
+            "version_minor": 0,
+            "model_id": widget.model_id,
+        },
+    }
     if latex:
         data["text/latex"] = latex
-    live = {"version_major": 2, "version_minor": 0, "model_id": widget.model_id}
-    return {**data, "application/vnd.jupyter.widget-view+json": live}, metadata
+    return data, {"image/png": {"width": round(drawing.scene.width * 4 / 3), "needs_background": "light"}}
 
 
 class View(anywidget.AnyWidget):
