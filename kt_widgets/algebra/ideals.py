@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from itertools import combinations
 from math import comb
+from operator import index
 from typing import Any, TypeAlias
 
 from kt_widgets.algebra.elimination import Elimination, Transforms, eliminate
@@ -485,7 +486,7 @@ def _combination_data(combination: Combination) -> list[list[Any]]:
 
 
 def _combination_from_data(data: Any) -> Combination:
-    return tuple((i, LaurentPolynomial.from_data(q)) for i, q in data)
+    return tuple((index(i), LaurentPolynomial.from_data(q)) for i, q in data)
 
 
 # Fitting ideals
@@ -671,8 +672,8 @@ class FittingCertificate(Portable, kind="fitting certificate"):
         """Read `to_data` back; call `verify` before believing it."""
         return cls(
             **{name: LaurentMatrix.from_data(data[name]) for name in _MATRICES},
-            k=data["k"],
-            minors=tuple((tuple(rows), tuple(columns)) for rows, columns in data["minors"]),
+            k=index(data["k"]),
+            minors=tuple((tuple(map(index, r)), tuple(map(index, c))) for r, c in data["minors"]),
             basis=tuple(LaurentPolynomial.from_data(f) for f in data["basis"]),
             basis_cofactors=tuple(_combination_from_data(c) for c in data["basis_cofactors"]),
             minor_cofactors=tuple(_combination_from_data(c) for c in data["minor_cofactors"]),

@@ -15,13 +15,16 @@ from kt_widgets.text.parsing import parse_polynomial
 from kt_widgets.text.portable import Portable
 from kt_widgets.text.printing import Style, polynomial_text
 
-__all__ = ["MAX_SPAN", "LaurentPolynomial", "Scalar", "gcd_of", "subtract_product"]
+__all__ = ["MAX_BITS", "MAX_SPAN", "LaurentPolynomial", "Scalar", "gcd_of", "subtract_product"]
 
 Scalar: TypeAlias = int | Fraction
 """Python numbers that coerce to constants."""
 
 MAX_SPAN = 10_000_000
 """Largest distance between the lowest and the highest exponent that sums and powers may reach."""
+
+MAX_BITS = 100_000_000
+"""Largest result, by a bound for its number of bits, that powers and values at numbers may have."""
 
 
 class LaurentPolynomial(Portable, kind="polynomial"):
@@ -34,8 +37,8 @@ class LaurentPolynomial(Portable, kind="polynomial"):
 
     Parameters
     ----------
-    coefficients : sequence of int or Fraction
-        Lowest exponent first; zeros at both ends are trimmed.
+    coefficients : sequence of int or Fraction, or str
+        Lowest exponent first; zeros at both ends are trimmed. A text is parsed.
     lowest : int
         Exponent of the first coefficient.
     over : "Z", "Q" or a prime p
@@ -44,6 +47,8 @@ class LaurentPolynomial(Portable, kind="polynomial"):
     ------
     AlgebraError
         If a coefficient is not in the ring, or the ring is none.
+    ParseError
+        If a text is no polynomial in t.
 
     Examples
     --------
@@ -52,6 +57,8 @@ class LaurentPolynomial(Portable, kind="polynomial"):
     t^-1 - 3 + t | t^-2 - 6t^-1 + 11 - 6t + t^2 | -1 (1, -3, 1)
     >>> f.change_ring(5)
     LaurentPolynomial('t^-1 + 2 + t', over=5)
+    >>> f == LaurentPolynomial("t^-1 - 3 + t")
+    True
     """
 
     __slots__ = ("_low", "_poly", "_ring")
@@ -60,8 +67,13 @@ class LaurentPolynomial(Portable, kind="polynomial"):
     _poly: FlintPolynomial
     _ring: Ring
 
-    def __init__(self, coefficients: Sequence[Scalar] = (), lowest: int = 0, over: RingName = "Z") -> None:
+    def __init__(
+        self, coefficients: Sequence[Scalar] | str = (), lowest: int = 0, over: RingName = "Z"
+    ) -> None:
         base = ring(over)
+        if isinstance(coefficients, str):
+            parsed = LaurentPolynomial.parse(coefficients, over)
+            coefficients, lowest = parsed.coefficients, parsed._low + lowest
         numbers = [base.number(c) for c in coefficients]
         start, stop = 0, len(numbers)
         while stop and not numbers[stop - 1]:
@@ -217,6 +229,12 @@ class LaurentPolynomial(Portable, kind="polynomial"):
             return LaurentPolynomial((other,), 0, self._ring.name)
         return NotImplemented
 
+    def _given(self, other: object) -> LaurentPolynomial:
+        given = self._coerced(other)
+        if given is NotImplemented:
+            raise AlgebraError(f"{other!r} is no polynomial", accepted="a LaurentPolynomial, int or Fraction")
+        return given  # type: ignore[no-any-return]
+
     def __neg__(self) -> LaurentPolynomial:
         return _made(self._low, -self._poly, self._ring)
 
@@ -280,12 +298,11 @@ class LaurentPolynomial(Portable, kind="polynomial"):
                 )
             return self.inverse() ** -exponent
         span = self.span()
-        bits = 0 if self._ring.is_field and self.over != "Q" else _bits(self)
-        if exponent * (span + 1) * (bits + 1) > 64 * MAX_SPAN and exponent > 1 and (span or bits > 1):
-            raise LimitError(
-                f"the power {exponent} of a polynomial of span {span} is too large",
-                accepted=f"results of up to {64 * MAX_SPAN} bits",
-            )
+        if self.over in ("Z", "Q"):
+            height = max(map(_height, self.coefficients), default=1) + span.bit_length()
+            _check_bits((exponent * span + 1) * exponent * (height - 1))
+        elif span:
+            _check_bits(32 * exponent * span)
         return _made(self._low * exponent, self._poly**exponent, self._ring)
 
     def inverse(self) -> LaurentPolynomial:
@@ -334,7 +351,7 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         >>> LaurentPolynomial.parse("1 + t").divides(LaurentPolynomial.parse("t^2 - 1"))
         True
         """
-        other = self._coerced(other)
+        other = self._given(other)
         return not divmod(other._poly, self._poly)[1] if self._poly else not other._poly
 
     def floor_quotient(self, other: LaurentPolynomial) -> LaurentPolynomial:
@@ -381,13 +398,10 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         )
 
     def _divisor(self, other: LaurentPolynomial | Scalar) -> LaurentPolynomial:
-        divisor = self._coerced(other)
-        if divisor is NotImplemented:
-            raise AlgebraError(f"{other!r} is no divisor", accepted="a LaurentPolynomial, int or Fraction")
+        divisor = self._given(other)
         if not divisor:
             raise AlgebraError("division by 0", accepted="a nonzero divisor")
-        checked: LaurentPolynomial = divisor
-        return checked
+        return divisor
 
     def __call__(self, value: Any) -> Any:
         """The value at an int, Fraction, float, complex or Laurent polynomial.
@@ -398,6 +412,8 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         ------
         AlgebraError
             At a value without inverse where exponents are negative.
+        LimitError
+            If the value may have more than `MAX_BITS` bits.
 
         Examples
         --------
@@ -411,6 +427,8 @@ class LaurentPolynomial(Portable, kind="polynomial"):
             value = base.number(value)
         if self._low < 0 and not value:
             raise AlgebraError(f"{self} has a pole at 0", accepted="a nonzero value")
+        if isinstance(value, int | Fraction) and abs(value) != 1 and not modular:
+            _check_bits((abs(self._low) + self.span()) * _height(value))
         total = reduce(lambda sum_, c: sum_ * value + c, reversed(self.coefficients), 0 * value)
         if modular and isinstance(value, int):
             return total * pow(value, self._low, int(base.name)) % int(base.name)
@@ -429,7 +447,7 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         >>> LaurentPolynomial.parse("6t^2 - 6").gcd(LaurentPolynomial.parse("4t^-1 + 4"))
         LaurentPolynomial('2 + 2t')
         """
-        return _made(0, self._poly.gcd(self._coerced(other)._poly), self._ring)
+        return _made(0, self._poly.gcd(self._given(other)._poly), self._ring)
 
     def inverse_modulo(self, modulus: LaurentPolynomial) -> LaurentPolynomial | None:
         """Over a field: the g with ``self * g == 1`` modulo another polynomial; None if they share a factor.
@@ -462,7 +480,7 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         >>> f.unit_to(2 * f) is None
         True
         """
-        other = self._coerced(other)
+        other = self._given(other)
         mine, theirs, base = self._poly, other._poly, self._ring
         if not mine or not theirs:
             return _made(0, base.one, base) if not mine and not theirs else None
@@ -643,8 +661,13 @@ def _check_span(span: int) -> None:
         raise LimitError(f"exponents {span} apart in one polynomial", accepted=f"at most {MAX_SPAN}")
 
 
-def _bits(f: LaurentPolynomial) -> int:
-    return max((abs(c.numerator * c.denominator).bit_length() for c in f.coefficients), default=0)
+def _height(value: Scalar) -> int:
+    return max(value.numerator.bit_length(), value.denominator.bit_length())
+
+
+def _check_bits(bits: int) -> None:
+    if bits > MAX_BITS:
+        raise LimitError(f"the result may have {bits} bits", accepted=f"results of at most {MAX_BITS} bits")
 
 
 def _unit_text(base: Ring) -> str:

@@ -63,7 +63,7 @@ class LaurentMatrix(Portable, kind="matrix"):
         over: RingName | None = None,
         shape: tuple[int, int] | None = None,
     ) -> None:
-        lines = [list(row) for row in rows]
+        lines = _lines(rows)
         width = len(lines[0]) if lines else (shape[1] if shape else 0)
         if shape is None:
             shape = (len(lines), width)
@@ -487,6 +487,16 @@ class LaurentMatrix(Portable, kind="matrix"):
 
 def _from_pickle(rows: tuple[Row, ...], over: RingName, shape: tuple[int, int]) -> LaurentMatrix:
     return LaurentMatrix._trusted(rows, over, shape)
+
+
+def _lines(rows: object) -> list[list[Any]]:
+    if isinstance(rows, Iterable) and not isinstance(rows, str):
+        given = list(rows)
+        if all(isinstance(row, Iterable) and not isinstance(row, str) for row in given):
+            return [list(row) for row in given]
+    raise AlgebraError(
+        f"{rows!r} is no list of rows", accepted="a list of lists, or LaurentMatrix.parse(text)"
+    )
 
 
 def _ring_name(entries: Iterable[Entry]) -> RingName:

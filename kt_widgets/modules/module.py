@@ -215,6 +215,11 @@ class Module(Portable, kind="module"):
         >>> print(Module.from_matrix([["2t - 1"]]).over(2))
         0
         """
+        if self.ring not in ("Z", ring):
+            raise AlgebraError(
+                f"a module over {self._base.text} does not pass to {ring_of(ring).text}",
+                accepted="over() of the module over Z[t,1/t] that it came from",
+            )
         basis = None if self.basis is None else self.basis.change_ring(ring)
         return Module(self.relations.change_ring(ring), basis, self.ambient, self.title)
 
