@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from itertools import accumulate, pairwise
 
-from kt_widgets.diagrams.entries import check_components, check_planar, items, size, whole
+from kt_widgets.diagrams.entries import MAX_CIRCLES, check_components, check_planar, items, size, whole
 from kt_widgets.diagrams.gauss import assemble
 from kt_widgets.diagrams.planar_map import Code, PlanarMap, Slots, ends_of_edges
 from kt_widgets.errors import DiagramError
@@ -30,8 +30,8 @@ def read_dowker(components: object) -> tuple[Code, str]:
     (an empty list is a crossingless component). Components run in the direction of their numbers.
 
     The code fixes a prime diagram up to mirror image. Chosen here: each summand is mirrored so that its first
-    crossing is positive. The summands are what is left when the diagram is cut
-    through all edges that border the same two faces; a crossing that such a cut isolates is a summand too.
+    crossing is positive. The summands are what is left when the diagram is cut through all edges that border
+    the same two faces; a crossing that such a cut isolates is a summand too.
 
     The realisation is a planarity test of the graph in which each crossing is a wheel whose four rim
     vertices are the ends of its edges in the order in, in, out, out.
@@ -59,7 +59,8 @@ def read_dowker(components: object) -> tuple[Code, str]:
 
 def _components(components: object) -> list[list[int]]:
     """The code as lists of whole numbers, one per component."""
-    entries = items(components, "the Dowker-Thistlethwaite code", ACCEPTED, MAX_DOWKER_CROSSINGS)
+    most = MAX_DOWKER_CROSSINGS + MAX_CIRCLES
+    entries = items(components, "the Dowker-Thistlethwaite code", ACCEPTED, most)
     if not entries:
         raise DiagramError("the code is empty", where="the code", accepted=ACCEPTED)
     nested = [isinstance(entry, Iterable) and not isinstance(entry, (str, bytes)) for entry in entries]
