@@ -38,7 +38,8 @@ def _crossings_of(one: Path, other: Path) -> Iterator[tuple[int, int, float, flo
     with np.errstate(divide="ignore", invalid="ignore"):
         s = (offset.conj() * ahead).imag / across
         t = (offset.conj() * along).imag / across
-        hit = (s >= 0) & (s <= 1) & (t >= 0) & (t <= 1)
+        # Coordinates are multiples of 0.01, so a cross product below this is 0: the sides are parallel.
+        hit = (np.abs(across) > 1e-6) & (s >= 0) & (s <= 1) & (t >= 0) & (t <= 1)
     for i, j in zip(*np.nonzero(hit), strict=True):
         yield int(i), int(j), float(s[i, j]), float(t[i, j])
 

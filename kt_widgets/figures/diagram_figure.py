@@ -31,6 +31,9 @@ _HALF_GAP, _LEAST_SINE, _MOST_OF_EDGE = 2.3, 0.5, 1 / 3
 _CROSSINGS_OF_SIDE = 10
 # How much larger a picture may get, without a width asked for, to find room for its labels.
 _GROWTH = (1.0, 1.2, 1.45)
+# Where on a stretch an arrow head may stand, best first, and how far it may bend there, in radians.
+_ARROW_AT = (0.5, 0.42, 0.58, 0.34, 0.66, 0.26, 0.74)
+_ARROW_BEND = 0.35
 _LEAST_WIDTH, _MOST_WIDTH = 36.0, 5000.0
 # Larger diagrams are not told crossing by crossing.
 _DESCRIBED = 30
@@ -266,16 +269,21 @@ def _cut(path: Path, start: float, end: float) -> Path:
 
 
 def _arrow(name: str, stretch: Path, tint: int | None, look: Preset) -> Arrow | None:
-    """A head in the middle of a stretch that is long enough to show it."""
+    """A head on a stretch that is long enough to show it: near the middle, where the stretch is straight."""
     probe = arrow_outline(Arrow(name, (0, 0), (1, 0), "strand"), look)
     head = -min(x for x, _ in probe)
     length = _length(stretch)
     if length < 1.8 * head:
         return None
     lengths = np.concatenate([[0.0], np.cumsum(np.abs(np.diff(stretch)))])
-    at = [(length - head) / 2, (length + head) / 2]
-    back, tip = np.interp(at, lengths, stretch.real) + 1j * np.interp(at, lengths, stretch.imag)
-    along = tip - back
+    shares = np.array(_ARROW_AT)
+    at = head / 2 + shares * (length - head)
+    spots = at[:, None] + np.array([-1.0, -0.5, 0.0, 0.5]) * head
+    points = np.interp(spots, lengths, stretch.real) + 1j * np.interp(spots, lengths, stretch.imag)
+    before, after = points[:, 1] - points[:, 0], points[:, 3] - points[:, 2]
+    bend = np.abs(np.angle(after / np.where(before == 0, 1, before)))
+    best = int(np.argmin(np.round(np.maximum(bend - _ARROW_BEND, 0), 2)))
+    tip, along = points[best, 3], points[best, 3] - points[best, 1]
     return Arrow(name, (tip.real, tip.imag), (along.real, along.imag), "strand", z=1, colour_index=tint)
 
 

@@ -86,7 +86,7 @@ def place_labels(
         if spot and spot.leader:
             spots[index] = spot
             boxes.append((spot.centre, wish.width, wish.height))
-            lines.append(resampled(np.array(spot.leader), 12))
+            lines.append(resampled(np.array(spot.leader), 24))
     return spots
 
 
@@ -198,24 +198,33 @@ def _led(
                 distance = _distances(centres, wish.width, wish.height, obstacles.points) - obstacles.radii
                 good &= distance.min(axis=1, initial=np.inf) >= gap
                 for index in np.flatnonzero(good).tolist():
-                    line = resampled(np.array([starts[index], ends[index]]), 12)
-                    apart = np.abs(line[:, None] - obstacles.points) - obstacles.radii
+                    line = (complex(starts[index]), complex(ends[index]))
+                    apart = _line_distance(line, obstacles.points) - obstacles.radii
                     # The leader touches its own strand where it starts, and nothing else.
-                    if (
-                        apart[:, ~own].min(initial=np.inf) < 0.7 * gap
-                        or apart[4:, own].min(initial=np.inf) < 0.7 * gap
-                    ):
-                        continue
-                    if any(_line_meets_box(line, box, gap) for box in boxes):
-                        continue
-                    if any(np.abs(line[:, None] - other).min() < gap for other in lines):
+                    apart[own & (np.abs(obstacles.points - line[0]) < 2 * gap + own_radius)] = np.inf
+                    if apart.min(initial=np.inf) < 0.7 * gap or not _line_is_free(line, boxes, lines, gap):
                         continue
                     cost = length * size + 0.5 * size * abs(slant) + 0.5 * size * float(middle[index])
-                    spot = Spot(complex(centres[index]), (complex(starts[index]), complex(ends[index])))
-                    found.append((round(cost, 6), len(found), spot))
+                    found.append((round(cost, 6), len(found), Spot(complex(centres[index]), line)))
     return min(found)[2] if found else None
 
 
-def _line_meets_box(line: Path, box: tuple[complex, float, float], gap: float) -> bool:
-    centre, width, height = box
-    return bool(_distances(np.array([centre]), width, height, line).min() < gap)
+def _line_distance(line: tuple[complex, complex], points: Path) -> Floats:
+    """The distance of each point from a straight line between two ends."""
+    along = line[1] - line[0]
+    share = np.clip(((points - line[0]) * along.conjugate()).real / abs(along) ** 2, 0, 1)
+    return np.abs(points - line[0] - share * along)
+
+
+def _line_is_free(
+    line: tuple[complex, complex],
+    boxes: Sequence[tuple[complex, float, float]],
+    lines: Sequence[Path],
+    gap: float,
+) -> bool:
+    """Whether a leader keeps clear of the labels and leaders already placed."""
+    points = resampled(np.array(line), max(8, int(abs(line[1] - line[0]) / (0.5 * gap))))
+    for centre, width, height in boxes:
+        if _distances(np.array([centre]), width, height, points).min() < gap:
+            return False
+    return all(_line_distance(line, other).min() >= gap for other in lines)

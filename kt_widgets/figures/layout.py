@@ -22,6 +22,7 @@ MAX_DRAWN_CROSSINGS = 400
 MAX_DRAWN_CIRCLES = 100
 # Beyond this a relaxation takes more than a second and the picture is too dense to read anyway.
 _MAX_RELAXED = 100
+_SMOOTHNESS = 1.25
 
 # In units of a typical face: the diameter of a crossingless component, and the room between pieces.
 _CIRCLE, _BETWEEN = 1.4, 0.6
@@ -129,14 +130,15 @@ def _drawn(piece: PlanarMap, outer: int) -> Curves:
     """One piece: the best of packed, magnified and relaxed curves, in a size that suits its crossings."""
     packed = curves_of_packing(piece, outer)
     crossings = len(piece.mate) // 4
-    candidates = [packed]
+    # Relaxed curves are the smoothest, so the others must be better by a good part.
+    candidates = [(packed, 1.0)]
     if crossings <= _MAX_RELAXED:
         even = magnified(packed)
-        candidates += [relaxed(even), even]
+        candidates += [(even, 1.0), (relaxed(even), _SMOOTHNESS)]
     # The packing is embedded by its nature; of the others that is to be seen.
-    curves = max(
-        (curves for curves in candidates if curves is packed or is_embedded(curves)),
-        key=lambda curves: round(score(curves), 6),
+    curves, _ = max(
+        ((curves, worth) for curves, worth in candidates if curves is packed or is_embedded(curves)),
+        key=lambda found: round(found[1] * score(found[0]), 6),
     )
     points = curves.points()
     size = max(np.ptp(points.real), np.ptp(points.imag))
@@ -156,8 +158,8 @@ def _upright(curves: Curves) -> Curves:
     for step in range(24):
         factor = down * np.exp(1j * np.pi * step / 12)
         height = float(np.ptp((factor * points).imag))
-        # Differences of a few hundredths are noise of the layout, not a better picture.
-        if height < 0.96 * best_height:
+        # A slightly lower picture is not worth a tilted one.
+        if height < 0.88 * best_height:
             best, best_height = factor, height
     return curves.moved(complex(best))
 

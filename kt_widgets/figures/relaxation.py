@@ -28,7 +28,7 @@ _STEPS = 100
 _SHARE, _ROOM = 0.2, 0.45
 # How far along the strands a point that has little room slows its neighbours down.
 _SPREAD = 5
-_TENSION, _BENDING, _SQUARENESS, _REPULSION = 1.0, 5.0, 3.0, 5.0
+_TENSION, _BENDING, _SQUARENESS, _REPULSION = 1.0, 8.0, 3.0, 5.0
 # With the mean area of a face as unit: how far repulsion reaches, and the area that pressure counts as small.
 _REACH, _SMALL_AREA = 0.7, 0.1
 _STRONGEST = 4.0
@@ -104,7 +104,7 @@ def _stiffness(net: _Net) -> Path:
     form = np.zeros((net.size, net.size), dtype=np.complex128)
     steps = len(net.chains[0]) - 1
     _add_squares(form, net.sides, (1, -1), _TENSION * steps)
-    _add_squares(form, net.bends(), (1, -2, 1), _BENDING * steps)
+    _add_squares(form, net.bends(), (1, -2, 1), _BENDING * steps**3 / 36)
     # A square crossing has its second diagonal a quarter turn ahead of the first.
     _add_squares(form, net.squares(), (-1j, 1, 1j, -1), _SQUARENESS * steps)
     return form

@@ -44,6 +44,7 @@ DIAGRAMS = {
     "split": Diagram.from_braid([1, 1, 1, 3, 3, -5], 8),
     "nugatory crossings": Diagram.from_braid([1, 1, 1, 2, -3, 4]),
     "row of kinks": Diagram.from_braid([1, 2, 3, 4, 5, 6]),
+    "ten kinks within each other": Diagram.from_braid(range(1, 11)),
     "nested kinks": Diagram.from_gauss([[1, -2, 2, -3, 3, -1]], [1, 1, -1]),
     "over everywhere": Diagram.from_gauss([[1, 2], [-1, -2]], [1, -1]),
     "circles only": Diagram.from_braid([], 5),
@@ -66,7 +67,7 @@ def assert_well_drawn(d: Diagram, preset: str = "paper") -> None:
     wanted, wanted_signs = d.to_gauss()
     assert cycles(code) == cycles(wanted)
     assert signs == wanted_signs
-    assert room_between_strands(scene) > PRESETS[preset].line
+    assert room_between_strands(scene) > 1.2 * PRESETS[preset].line
 
 
 @pytest.mark.parametrize("name", DIAGRAMS)
@@ -153,23 +154,15 @@ def test_the_size_asked_for_is_kept() -> None:
         assert 0.8 * width < max(scene.width, scene.height) <= width
 
 
-def test_the_empty_diagram_is_an_empty_picture() -> None:
-    try:
-        empty = Diagram(())
-    except DiagramError:
-        pytest.skip("a diagram without crossings and components is refused")
-    assert diagram(empty).scene.items == ()
-
-
 def test_refusals_are_in_words() -> None:
     d = DIAGRAMS["trefoil"]
-    with pytest.raises(DiagramError, match="no face 6 .*accepted: a face from 1 to 5"):
+    with pytest.raises(DiagramError, match=r"no face 6 .*accepted: a face from 1 to 5"):
         diagram(d, outer=6)
-    with pytest.raises(KtError, match="no preset 'poster'.*paper"):
+    with pytest.raises(KtError, match=r"no preset 'poster'.*paper"):
         diagram(d, preset="poster")
     with pytest.raises(KtError, match="36 to 5000"):
         diagram(d, width=-3)
-    with pytest.raises(LimitError, match="401 crossings.*400"):
+    with pytest.raises(LimitError, match=r"401 crossings.*400"):
         diagram(Diagram.from_braid([1] * 401))
     with pytest.raises(LimitError, match="101 crossingless components"):
         diagram(Diagram((), circles=101))
