@@ -393,7 +393,7 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         divisor = self._divisor(other)
         quotient, remainder = divmod(self._poly, divisor._poly)
         return (
-            _made(self._low - divisor._low if quotient else 0, quotient, self._ring),
+            _trimmed(self._low - divisor._low, quotient, self._ring),
             _trimmed(self._low, remainder, self._ring),
         )
 

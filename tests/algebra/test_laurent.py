@@ -34,6 +34,10 @@ def over_one_ring(count):
     return st.sampled_from(RINGS).flatmap(lambda over: st.tuples(*[polynomials(over)] * count))
 
 
+def trimmed(f):
+    return bool(f.coefficients[0] and f.coefficients[-1]) if f else f.lowest == 0
+
+
 def naive(over, *products):
     """The sum of the products of pairs of polynomials, by their terms."""
     total = {}
@@ -51,6 +55,7 @@ def naive(over, *products):
 def test_arithmetic_is_that_of_terms(fgh):
     f, g, h = fgh
     over, one = f.over, LaurentPolynomial.constant(1, f.over)
+    assert all(map(trimmed, (f * g, f + g, f - g, subtract_product(f, g, h), f.conjugate())))
     assert (f * g).terms() == naive(over, (f, g))
     assert (f + g).terms() == naive(over, (f, one), (g, one))
     assert (f - g).terms() == naive(over, (f, one), (g, -one))
@@ -76,7 +81,7 @@ def test_ring_laws(fgh):
 def test_invariants_and_ways_in_and_out(one):
     (f,) = one
     assert len(f.coefficients) == (f.highest - f.lowest + 1 if f else 0)
-    assert not f or (f.coefficients[0] and f.coefficients[-1])
+    assert trimmed(f)
     assert LaurentPolynomial.parse(str(f), f.over) == f
     assert LaurentPolynomial.parse(f.latex(), f.over) == f
     assert LaurentPolynomial.parse(f.text("unicode"), f.over) == f
@@ -101,6 +106,8 @@ def test_division(fg):
     if f.over != "Z":
         quotient, remainder = divmod(f, g)
         assert f == quotient * g + remainder
+        assert trimmed(quotient)
+        assert trimmed(remainder)
         assert not remainder or remainder.span() < g.span()
         inverse = f.inverse_modulo(g) if f else None
         assert inverse is None or g.divides(inverse * f - 1)
