@@ -13,6 +13,7 @@ from kt_widgets.errors import AlgebraError, LimitError
 from kt_widgets.groups.words import Letter, Word
 from kt_widgets.places import Place
 from kt_widgets.text.parsing import MAX_LETTERS
+from kt_widgets.text.printing import Style, lift_text, name_text, polynomial_text, word_text
 
 __all__ = ["Visit", "fox_derivative", "visits"]
 
@@ -48,6 +49,23 @@ class Visit(NamedTuple):
     def letter(self) -> Place:
         """The letter of the relator."""
         return Place("letter", (self.relator, self.position))
+
+    def text(self, style: Style = "plain") -> str:
+        """The letter, its way in the cover, and what it adds to the boundary.
+
+        Examples
+        --------
+        >>> print(visits(Word.parse("a b^-1"), {"a": 1, "b": 1})[1])
+        b^-1 from t e to e: -1 in the entry of b
+        """
+        letter = word_text([(self.generator, self.sign)], style)
+        way = f"from {lift_text(self.start, 'e', style)} to {lift_text(self.end, 'e', style)}"
+        sign = "+" if self.sign > 0 else "−" if style == "unicode" else "-"
+        added = sign + polynomial_text({self.exponent: 1}, style)
+        return f"{letter} {way}: {added} in the entry of {name_text(self.generator, style)}"
+
+    def __str__(self) -> str:
+        return self.text()
 
 
 def visits(

@@ -13,6 +13,8 @@ from typing import Literal
 __all__ = [
     "MAX_LATEX_ENTRIES",
     "Style",
+    "chain_text",
+    "lift_text",
     "matrix_text",
     "matrix_too_large",
     "name_text",
@@ -86,6 +88,46 @@ def polynomial_text(terms: Mapping[int, int | Fraction], style: Style = "plain",
             pieces.append(minus + body if coefficient < 0 else body)
         else:
             pieces.append(f" {minus if coefficient < 0 else '+'} {body}")
+    return "".join(pieces) or "0"
+
+
+def lift_text(power: int, cell: str, style: Style = "plain") -> str:
+    """Print the lift t^power of a cell.
+
+    Examples
+    --------
+    >>> lift_text(-1, "e"), lift_text(0, "e"), lift_text(1, "e", "unicode")
+    ('t^-1 e', 'e', 't e')
+    """
+    return f"{polynomial_text({power: 1}, style)} {cell}" if power else cell
+
+
+def chain_text(
+    coefficients: Iterable[tuple[str, Mapping[int, int | Fraction]]], style: Style = "plain"
+) -> str:
+    """Print a chain: a sum of Laurent polynomials, given by exponent and coefficient, times names.
+
+    Examples
+    --------
+    >>> chain_text([("a", {0: 1, 1: -1}), ("b", {1: -1}), ("c", {}), ("d", {0: 2})])
+    '(1 - t) a - t b + 2d'
+    >>> chain_text([("x1", {0: Fraction(1, 2)})], "latex"), chain_text([])
+    ('\\\\frac{1}{2} x_{1}', '0')
+    """
+    pieces: list[str] = []
+    for name, given in coefficients:
+        terms = {exponent: c for exponent, c in given.items() if c}
+        if not terms:
+            continue
+        negative = len(terms) == 1 and min(terms.values()) < 0
+        text = polynomial_text({e: -c if negative else c for e, c in terms.items()}, style)
+        if len(terms) > 1:
+            factor = f"({text}) "
+        else:
+            factor = "" if text == "1" else text if text.isdecimal() else f"{text} "
+        minus = "−" if style == "unicode" else "-"
+        sign = (f" {minus} " if negative else " + ") if pieces else (minus if negative else "")
+        pieces.append(sign + factor + name_text(name, style))
     return "".join(pieces) or "0"
 
 
