@@ -72,6 +72,10 @@ class Ring:
         """The flint polynomial with these coefficients, lowest first, each a result of `number`."""
         raise NotImplementedError
 
+    def from_integers(self, polynomial: FlintPolynomial) -> FlintPolynomial:
+        """The image of a flint polynomial over Z."""
+        raise NotImplementedError
+
     def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
         """The coefficients as python numbers, lowest first."""
         raise NotImplementedError
@@ -114,6 +118,9 @@ class _Integers(Ring):
     def polynomial(self, coefficients: Sequence[Any]) -> FlintPolynomial:
         return fmpz_poly(coefficients)
 
+    def from_integers(self, polynomial: FlintPolynomial) -> FlintPolynomial:
+        return polynomial
+
     def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
         return [int(c) for c in polynomial.coeffs()]
 
@@ -136,6 +143,9 @@ class _Rationals(Ring):
         common = lcm(*(c.denominator for c in coefficients))
         numerators = [c.numerator * (common // c.denominator) for c in coefficients]
         return fmpq_poly(numerators, common)
+
+    def from_integers(self, polynomial: FlintPolynomial) -> FlintPolynomial:
+        return fmpq_poly(polynomial)
 
     def value(self, coefficient: Any) -> Fraction:
         return Fraction(int(coefficient.p), int(coefficient.q))
@@ -167,6 +177,9 @@ class _PrimeField(Ring):
 
     def polynomial(self, coefficients: Sequence[Any]) -> FlintPolynomial:
         return nmod_poly(coefficients, self.p)
+
+    def from_integers(self, polynomial: FlintPolynomial) -> FlintPolynomial:
+        return nmod_poly(polynomial, self.p)
 
     def numbers(self, polynomial: FlintPolynomial) -> list[Any]:
         return [int(c) for c in polynomial.coeffs()]

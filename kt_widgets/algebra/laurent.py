@@ -139,6 +139,18 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         return cls((value,), 0, over)
 
     @classmethod
+    def from_integers(cls, terms: Mapping[int, int], base: Ring) -> LaurentPolynomial:
+        """The polynomial with these integers by exponent, at least one, over a ring that is at hand."""
+        low = min(terms)
+        length = max(terms) - low + 1
+        _check_span(length - 1)
+        coefficients = [0] * length
+        for exponent, coefficient in terms.items():
+            coefficients[exponent - low] = coefficient
+        # Sums may have cancelled at both ends; flint drops zeros at the upper one itself.
+        return _trimmed(low, base.polynomial(coefficients), base)
+
+    @classmethod
     def from_flint(cls, polynomial: FlintPolynomial, lowest: int, base: Ring) -> LaurentPolynomial:
         """t^lowest times a flint polynomial over the ring, which must not be changed afterwards."""
         return _trimmed(lowest, polynomial, base)
@@ -540,7 +552,9 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         base = ring(over)
         if base is self._ring:
             return self
-        if self.over not in ("Z", "Q"):
+        if self._ring.name == "Z":
+            return _trimmed(self._low, base.from_integers(self._poly), base)
+        if self.over != "Q":
             raise AlgebraError(
                 f"there is no map from {self._ring.text} to {base.text}",
                 accepted="change the ring of the polynomial over Z that it came from",

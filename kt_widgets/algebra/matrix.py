@@ -129,10 +129,7 @@ class LaurentMatrix(Portable, kind="matrix"):
         rows: list[Row] = [{} for _ in range(shape[0])]
         for (i, j), value in entries.items():
             if not (0 <= i < shape[0] and 0 <= j < shape[1]):
-                raise AlgebraError(
-                    f"there is no entry ({i + 1}, {j + 1}) in a {shape[0]} x {shape[1]} matrix",
-                    accepted="rows and columns within the shape",
-                )
+                raise _no_entry(i, j, shape)
             if f := _entry(value, base, i, j):
                 rows[i][j] = f
         return cls._trusted(rows, over, shape)
@@ -148,12 +145,19 @@ class LaurentMatrix(Portable, kind="matrix"):
         >>> print(LaurentMatrix.from_monomials([(0, 0, 0, 1), (0, 0, 2, -1), (0, 1, 1, 1)], (1, 2)))
         [[1 - t^2, t]]
         """
-        sums: dict[tuple[int, int], dict[int, int]] = {}
+        _check_shape(shape)
+        base = ring(over)
+        sums: list[dict[int, dict[int, int]]] = [{} for _ in range(shape[0])]
         for i, j, exponent, coefficient in monomials:
-            terms = sums.setdefault((i, j), {})
+            if not (0 <= i < shape[0] and 0 <= j < shape[1]):
+                raise _no_entry(i, j, shape)
+            terms = sums[i].setdefault(j, {})
             terms[exponent] = terms.get(exponent, 0) + coefficient
-        entries = {place: LaurentPolynomial.from_terms(terms, over) for place, terms in sums.items()}
-        return cls.from_entries(entries, shape, over)
+        rows = (
+            {j: f for j, terms in row.items() if (f := LaurentPolynomial.from_integers(terms, base))}
+            for row in sums
+        )
+        return cls._trusted(rows, over, shape)
 
     @classmethod
     def identity(cls, size: int, over: RingName = "Z") -> LaurentMatrix:
@@ -487,6 +491,13 @@ class LaurentMatrix(Portable, kind="matrix"):
 
 def _from_pickle(rows: tuple[Row, ...], over: RingName, shape: tuple[int, int]) -> LaurentMatrix:
     return LaurentMatrix._trusted(rows, over, shape)
+
+
+def _no_entry(i: int, j: int, shape: tuple[int, int]) -> AlgebraError:
+    return AlgebraError(
+        f"there is no entry ({i + 1}, {j + 1}) in a {shape[0]} x {shape[1]} matrix",
+        accepted="rows and columns within the shape",
+    )
 
 
 def _lines(rows: object) -> list[list[Any]]:

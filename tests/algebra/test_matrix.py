@@ -118,6 +118,20 @@ def test_ways_in_and_out(a):
         assert a.delete(row=0) == a.submatrix(range(1, a.shape[0]), range(a.shape[1]))
 
 
+place = st.tuples(st.integers(0, 1), st.integers(0, 1), st.integers(-3, 3), st.integers(-3, 3))
+
+
+@given(st.sampled_from(RINGS), st.lists(place, max_size=12))
+@settings(deadline=None)
+def test_sums_of_monomials(over, monomials):
+    total = LaurentMatrix.zero(2, 2, over)
+    for i, j, exponent, coefficient in monomials:
+        f = LaurentPolynomial.monomial(exponent, coefficient, over)
+        total = total + LaurentMatrix.from_entries({(i, j): f}, (2, 2), over)
+    assert LaurentMatrix.from_monomials(monomials, (2, 2), over) == total
+    assert all(f.coefficients[0] and f.coefficients[-1] for _, _, f in total.entries())
+
+
 @given(matrices())
 @settings(deadline=None)
 def test_elimination_and_its_transforms(a):
@@ -204,6 +218,8 @@ def test_bad_input_is_refused_with_the_place():
         LaurentMatrix([[1]]) @ LaurentMatrix([[1]], over=5)
     with pytest.raises(AlgebraError, match=r"\(3, 1\)"):
         LaurentMatrix.from_entries({(2, 0): 1}, (2, 2))
+    with pytest.raises(AlgebraError, match=r"\(1, 3\)"):
+        LaurentMatrix.from_monomials([(0, 2, 0, 1)], (2, 2))
     with pytest.raises(LimitError):
         LaurentMatrix.zero(MAX_SIDE + 1, 1)
     with pytest.raises(IndexError):
