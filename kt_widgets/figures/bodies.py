@@ -23,6 +23,8 @@ from kt_widgets.text.printing import matrix_too_large, name_text, word_text
 
 __all__ = [
     "MAX_CELLS",
+    "MAX_TEXT",
+    "MAX_WORKED",
     "Fact",
     "facts",
     "facts_latex",
@@ -37,6 +39,12 @@ __all__ = [
 
 MAX_CELLS = 10_000
 """The largest matrix shown as a table of cells that can be pointed at."""
+
+MAX_WORKED = 30
+"""Ideals over Z[t,1/t] and generating cycles are worked out for at most this many generators of the group."""
+
+MAX_TEXT = 600
+"""The longest cycle, in signs, that is written out."""
 
 
 def maths(text: str) -> str:
@@ -236,41 +244,53 @@ def facts(cover: Cover, over: RingName = "Z") -> list[Fact]:
     Q[t, 1/t]/(1 − t + t²)
     """
     c = cover.chains() if over == "Z" else cover.chains().over(over)
-    h = c.homology(1)
     found = [_sum_of_quotients("H₀", "H_0", [c.homology(0).order()], over)]
-    if over == "Z":
-        order = h.order()
-        found.append(
-            Fact(
-                "order of H₁",
-                order.text("unicode"),
-                rf"\operatorname{{ord}} H_1 \doteq {order.latex()}",
-                "up to units" if order else f"H₁ has rank {c.rank(1)}",
-            )
-        )
-        k, ideal = 0, None
-        while ideal is None or not ideal.is_unit():
-            k, ideal = k + 1, cover.alexander_ideal(k + 1)
-            if not ideal.is_zero():
-                found.append(
-                    Fact(
-                        f"ideal {name_text(f'E{k}', 'unicode')}",
-                        ideal.text("unicode"),
-                        f"E_{{{k}}} = {ideal.latex()}",
-                    )
-                )
-    else:
-        summands = h.summands()
-        found.append(_sum_of_quotients("H₁", "H_1", [s.factor for s in summands], over))
-        for i, s in enumerate(summands, 1):
-            parts = [(name, f.terms()) for name, f in zip(s.names, s.cycle, strict=True)]
-            which = f" {i}" if len(summands) > 1 else ""
-            found.append(
-                Fact(f"generator{which}", chain_text(parts), f"z_{{{i}}} = {chain_text(parts, 'latex')}")
-            )
+    found += _orders_and_ideals(cover) if over == "Z" else _summands(c)
     free = [LaurentPolynomial(over=over)] * c.rank(2)
     note = "of the presentation complex: each redundant relator adds one summand" if free else ""
     return [*found, _sum_of_quotients("H₂", "H_2", free, over)._replace(note=note)]
+
+
+def _orders_and_ideals(cover: Cover) -> list[Fact]:
+    """What is said of H_1 over Z[t,1/t]."""
+    c = cover.chains()
+    order = c.homology(1).order()
+    note = "up to units" if order else f"H₁ has rank {c.rank(1)}"
+    latex = rf"\operatorname{{ord}} H_1 \doteq {order.latex()}"
+    found = [Fact("order of H₁", order.text("unicode"), latex, note)]
+    if len(c.generators) > MAX_WORKED:
+        note = f"for more than {MAX_WORKED} generators only in Python: cover.alexander_ideal(k)"
+        return [*found, Fact("ideals Eₖ", "", "", note)]
+    for k in range(1, len(c.generators) + 1):
+        ideal = cover.alexander_ideal(k)
+        name, latex = name_text(f"E{k}", "unicode"), f"E_{{{k}}} = {ideal.latex()}"
+        if not ideal.is_zero():
+            found.append(Fact(f"ideal {name}", ideal.text("unicode"), latex))
+        if ideal.is_unit():
+            break
+    return found
+
+
+def _summands(c: ChainComplex) -> list[Fact]:
+    """What is said of H_1 over a field."""
+    h = c.homology(1)
+    if len(c.generators) > MAX_WORKED:
+        note = f"cycles for more than {MAX_WORKED} generators only in Python: .over(ring).summands()"
+        return [
+            _sum_of_quotients("H₁", "H_1", h.invariant_factors(), c.ring),
+            Fact("generators", "", "", note),
+        ]
+    summands = h.summands()
+    found = [_sum_of_quotients("H₁", "H_1", [s.factor for s in summands], c.ring)]
+    for i, s in enumerate(summands, 1):
+        parts = [(name, f.terms()) for name, f in zip(s.names, s.cycle, strict=True)]
+        name = f"generator {i}" if len(summands) > 1 else "generator"
+        text, latex = chain_text(parts), f"z_{{{i}}} = {chain_text(parts, 'latex')}"
+        if len(text) > MAX_TEXT:
+            text, latex = "", ""
+        note = "" if text else "a long cycle, in Python: .over(ring).summands()"
+        found.append(Fact(name, text, latex, note))
+    return found
 
 
 def _sum_of_quotients(name: str, symbol: str, factors: Sequence[LaurentPolynomial], over: RingName) -> Fact:
@@ -282,7 +302,7 @@ def _sum_of_quotients(name: str, symbol: str, factors: Sequence[LaurentPolynomia
 
 def facts_latex(found: Sequence[Fact]) -> str:
     """Facts in LaTeX, one below the other, for use between dollars."""
-    return r"\begin{gathered} " + r" \\ ".join(f.latex for f in found) + r" \end{gathered}"
+    return r"\begin{gathered} " + r" \\ ".join(f.latex for f in found if f.latex) + r" \end{gathered}"
 
 
 def homology(cover: Cover, rings: Sequence[RingName] = ("Z", "Q", 2, 3, 5), more: str = "") -> str:
