@@ -127,22 +127,26 @@ def lay_out(
 
 
 def _drawn(piece: PlanarMap, outer: int) -> Curves:
-    """One piece: the best of packed, magnified and relaxed curves, in a size that suits its crossings."""
-    packed = curves_of_packing(piece, outer)
-    crossings = len(piece.mate) // 4
-    # Relaxed curves are the smoothest, so the others must be better by a good part.
-    candidates = [(packed, 1.0)]
-    if crossings <= _MAX_RELAXED:
-        even = magnified(packed)
-        candidates += [(even, 1.0), (relaxed(even), _SMOOTHNESS)]
-    # The packing is embedded by its nature; of the others that is to be seen.
-    curves, _ = max(
-        ((curves, worth) for curves, worth in candidates if curves is packed or is_embedded(curves)),
-        key=lambda found: round(found[1] * score(found[0]), 6),
-    )
+    """One piece, in a size that suits its number of crossings."""
+    curves = _best_curves(piece, outer)
     points = curves.points()
     size = max(np.ptp(points.real), np.ptp(points.imag))
-    return curves.moved((0.6 + 1.1 * crossings**0.5) / size)
+    return curves.moved((0.6 + 1.1 * (len(piece.mate) / 4) ** 0.5) / size)
+
+
+def _best_curves(piece: PlanarMap, outer: int) -> Curves:
+    """The relaxed curves if they are sound, else the magnified or the packed ones."""
+    packed = curves_of_packing(piece, outer)
+    if len(piece.mate) // 4 > _MAX_RELAXED:
+        return packed
+    magnified_curves = magnified(packed)
+    smooth = relaxed(magnified_curves)
+    # Relaxed curves are the smoothest, so the packed ones must be better by a good part.
+    if _SMOOTHNESS * score(smooth) > score(packed) and is_embedded(smooth):
+        return smooth
+    if score(magnified_curves) > score(packed) and is_embedded(magnified_curves):
+        return magnified_curves
+    return packed
 
 
 def _upright(curves: Curves) -> Curves:

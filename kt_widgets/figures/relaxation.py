@@ -32,6 +32,8 @@ _TENSION, _BENDING, _SQUARENESS, _REPULSION = 1.0, 8.0, 3.0, 5.0
 # With the mean area of a face as unit: how far repulsion reaches, and the area that pressure counts as small.
 _REACH, _SMALL_AREA = 0.7, 0.1
 _STRONGEST = 4.0
+# Matrices of up to this size are inverted without threads.
+_SMALL_MATRIX = 64
 # Points of an edge between its crossings, for diagrams of up to so many crossings and for larger ones.
 _INNER = ((10, 7), (30, 5))
 _COARSE = 3
@@ -110,9 +112,46 @@ def _stiffness(net: _Net) -> Path:
     return form
 
 
+def _inverse(form: Path) -> Path:
+    """The inverse of a positive definite Hermitian matrix, by halves.
+
+    Small blocks and einsum keep it in one thread: threaded routines become fifty times slower, for matrices
+    of these sizes, on a busy machine.
+    """
+    if len(form) <= _SMALL_MATRIX:
+        return np.asarray(np.linalg.inv(form))
+    half = len(form) // 2
+    first = _inverse(form[:half, :half])
+    corner = form[half:, :half].conj()
+    across = np.einsum("ij,kj->ik", first, corner)
+    rest = _inverse(form[half:, half:] - np.einsum("ij,kj->ik", corner.conj(), across.T))
+    lower = -np.einsum("ij,kj->ik", rest, across.conj())
+    return np.block([[first - np.einsum("ij,kj->ik", across, lower.T), lower.conj().T], [lower, rest]])
+
+
 def _gathered(index: Indices, values: Path, size: int) -> Path:
     real = np.bincount(index, values.real, size)
     return np.asarray(real + 1j * np.bincount(index, values.imag, size))
+
+
+def _squared_distances(points: Path, start: Path, end: Path) -> tuple[Floats, Floats]:
+    """For each point (rows) and side (columns): the square of the distance, and where on the side it is met.
+
+    Written with real numbers in place, since nearly all the time of a relaxation goes here.
+    """
+    along_x, along_y = end.real - start.real, end.imag - start.imag
+    x = points.real[:, None] - start.real
+    y = points.imag[:, None] - start.imag
+    share = x * along_x
+    share += y * along_y
+    share /= along_x**2 + along_y**2
+    np.clip(share, 0, 1, out=share)
+    x -= share * along_x
+    y -= share * along_y
+    x *= x
+    y *= y
+    x += y
+    return x, share
 
 
 def relaxed(curves: Curves) -> Curves:
@@ -125,7 +164,7 @@ def relaxed(curves: Curves) -> Curves:
     net, points = _net(curves)
     form = _stiffness(net)
     # The form does not feel translations; adding their projection makes it invertible and keeps the mean.
-    inverse = np.linalg.inv(form + 1 / net.size)
+    inverse = _inverse(form + 1 / net.size)
     steps = len(net.chains[0]) - 1
     cycles = net.cycles(curves.outer)
     at = np.array([point for cycle in cycles for point in cycle], dtype=np.intp)
@@ -134,8 +173,8 @@ def relaxed(curves: Curves) -> Curves:
     face = np.repeat(np.arange(len(cycles)), [len(cycle) for cycle in cycles])
     wanted = np.sqrt([max(len(cycle) / steps, 2.0) for cycle in cycles])
     start, end = net.sides.T
-    own = np.zeros((net.size, len(net.sides)), dtype=bool)
-    own[start, np.arange(len(start))] = own[end, np.arange(len(end))] = True
+    # In a table with a row for each point, the entries of the sides that end there.
+    own = np.concatenate([start, end]) * len(start) + np.tile(np.arange(len(start)), 2)
 
     def areas() -> Floats:
         return np.bincount(face, (points[at].conj() * points[after]).imag, len(cycles)) / 2
@@ -144,26 +183,22 @@ def relaxed(curves: Curves) -> Curves:
     for _ in range(_STEPS):
         pressure = (wanted / (areas() + _SMALL_AREA))[face]
         force = _gathered(at, -0.5j * pressure * (points[after] - points[before]), net.size)
-        along = points[end] - points[start]
-        apart = points[:, None] - points[start]
-        share = np.clip((apart * along.conj()).real / np.abs(along) ** 2, 0, 1)
-        apart -= share * along
-        distance = np.abs(apart)
-        distance[own] = np.inf
-        close = np.flatnonzero(distance < _REACH)
+        square, share = _squared_distances(points, points[start], points[end])
+        square.ravel()[own] = np.inf
+        close = np.flatnonzero(square < _REACH**2)
         point, side = np.divmod(close, len(start))
-        near, part = distance.ravel()[close], share.ravel()[close]
+        near, part = np.sqrt(square.ravel()[close]), share.ravel()[close]
         strength = _REPULSION / steps * np.minimum(_REACH / near - 1, _STRONGEST)
-        push = strength * apart.ravel()[close] / near
+        apart = points[point] - (1 - part) * points[start[side]] - part * points[end[side]]
+        push = strength * apart / near
         force += _gathered(point, push, net.size)
         force -= _gathered(start[side], (1 - part) * push, net.size)
         force -= _gathered(end[side], part * push, net.size)
-        # The inverse of the form times the form leaves the points as they are, up to their mean. einsum and
-        # not @, since a threaded product of this size is 50 times slower on a busy machine.
+        # The inverse of the form times the form leaves the points as they are, up to their mean.
         solution = np.einsum("ij,j->i", inverse, force)
         move = _SHARE * (solution - points + points.mean())
-        room = distance.min(axis=1)
-        nearest = distance.min(axis=0)
+        room = np.sqrt(square.min(axis=1))
+        nearest = np.sqrt(square.min(axis=0))
         np.minimum.at(room, start, nearest)
         np.minimum.at(room, end, nearest)
         slower = np.minimum(1, _ROOM * room / np.maximum(np.abs(move), 1e-300))
