@@ -19,8 +19,8 @@ class KtError(ValueError):
 
     Examples
     --------
-    >>> print(KtError("the weight of b is missing", where="weights", accepted="an integer for each generator"))
-    the weight of b is missing (at weights); accepted: an integer for each generator
+    >>> print(KtError("b has no weight", where="weights", accepted="an integer for each generator"))
+    b has no weight (at weights); accepted: an integer for each generator
     """
 
     def __init__(self, what: str, *, where: str = "", accepted: str = "") -> None:

@@ -11,7 +11,7 @@ import pytest
 
 import kt_widgets as kt
 
-PREAMBLE = r"\documentclass{article}\usepackage{amsmath,amssymb}\setcounter{MaxMatrixCols}{30}\begin{document}"
+PREAMBLE = r"\documentclass{article}\usepackage{amsmath,amssymb}\begin{document}"
 
 
 def engine() -> str:

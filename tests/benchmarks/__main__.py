@@ -1,7 +1,7 @@
 """Benchmarks: `python -m tests.benchmarks` prints ours, each peer and the ratio, measured in one run.
 
-Nothing here asserts a time: machines are noisy, so only ratios within one run count. Peers are general-purpose
-libraries doing the same work on the same diagrams; cypari2 takes part when it is installed.
+Nothing here asserts a time: machines are noisy, so only ratios within one run count. Peers are
+general-purpose libraries doing the same work on the same diagrams; cypari2 takes part when it is installed.
 """
 
 from __future__ import annotations
@@ -11,6 +11,7 @@ import subprocess
 import sys
 import time
 from collections.abc import Callable
+from functools import partial
 
 import flint
 import sympy
@@ -40,7 +41,8 @@ def seconds(work: Callable[[], object], least: float = 0.3) -> float:
 def import_seconds(module: str) -> float:
     """Time of an import in a fresh process, best of five, without starting Python itself."""
     code = f"import time; s = time.perf_counter(); import {module}; print(time.perf_counter() - s)"
-    runs = (subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True) for _ in range(5))
+    command = [sys.executable, "-c", code]
+    runs = [subprocess.run(command, capture_output=True, text=True, check=True) for _ in range(5)]
     return min(float(run.stdout) for run in runs)
 
 
@@ -76,9 +78,12 @@ def minor_of(word: list[int]) -> list[list[kt.LaurentPolynomial]]:
 def as_sympy(minor: list[list[kt.LaurentPolynomial]]) -> DomainMatrix:
     """The same matrix with its columns cleared of negative exponents, over ZZ[t]."""
     t = sympy.Symbol("t")
-    cleared = cleared_columns(minor)
     ring = sympy.ZZ[t]
-    rows = [[ring.from_sympy(sum((c * t**e for e, c in f.terms().items()), sympy.Integer(0))) for f in r] for r in cleared]
+
+    def entry(f: kt.LaurentPolynomial) -> object:
+        return ring.from_sympy(sum((c * t**e for e, c in f.terms().items()), sympy.Integer(0)))
+
+    rows = [[entry(f) for f in line] for line in cleared_columns(minor)]
     return DomainMatrix(rows, (len(rows), len(rows)), ring)
 
 
@@ -110,15 +115,19 @@ def by_pari(minor: list[list[kt.LaurentPolynomial]]) -> Callable[[], object] | N
     """PARI's determinant of the same matrix, when cypari2 is installed."""
     if cypari2 is None:
         return None
-    rows = [[" + ".join(f"{c}*t^{e}" for e, c in f.terms().items()) or "0" for f in r] for r in cleared_columns(minor)]
-    matrix = cypari2.Pari()("[" + "; ".join(", ".join(r) for r in rows) + "]")
+    lines = [
+        ", ".join(" + ".join(f"{c}*t^{e}" for e, c in f.terms().items()) or "0" for f in line)
+        for line in cleared_columns(minor)
+    ]
+    matrix = cypari2.Pari()("[" + "; ".join(lines) + "]")
     return lambda: matrix.matdet()
 
 
 def row(work: str, ours: float, peers: dict[str, float | None]) -> None:
-    """Print one line of the table for each peer."""
+    """Print one line of the table for each peer; None is a peer that is not installed."""
     for name, other in peers.items():
-        shown, ratio = ("not installed", "") if other is None else (f"{other * 1e3:10.2f} ms", f"{other / ours:8.1f} x")
+        shown = "not installed" if other is None else f"{other * 1e3:10.2f} ms"
+        ratio = "" if other is None else f"{other / ours:8.1f} x"
         print(f"{work:44} {ours * 1e3:10.2f} ms   {name:28} {shown:>13} {ratio}", flush=True)
         work = ""
 
@@ -131,12 +140,11 @@ def main() -> None:
     row("import kt_widgets", import_seconds("kt_widgets"), {"import sympy": import_seconds("sympy")})
 
     word = random_knot_braid(12, 4, rng)
-    minor = minor_of(word)
-    cleared = as_sympy(minor)
+    cleared = as_sympy(minor_of(word))
     row(
         "12 crossings: diagram to invariant factors",
         seconds(lambda: refresh(word)),
-        {"sympy DomainMatrix.charpoly-free det": seconds(cleared.det)},
+        {"sympy, the determinant alone": seconds(cleared.det)},
     )
     row(
         "12 crossings: first picture (layout and SVG)",
@@ -147,13 +155,12 @@ def main() -> None:
         word = random_knot_braid(crossings, strands, rng)
         minor = minor_of(word)
         pari = by_pari(minor)
-        peers: dict[str, float | None] = {
-            "python-flint interpolation": seconds(lambda m=minor: by_interpolation(m)) if crossings <= 50 else None,
-            "PARI matdet": seconds(pari) if pari else None,
-            "sympy DomainMatrix": seconds(as_sympy(minor).det, least=0.0) if crossings <= 50 else None,
-        }
+        peers: dict[str, float | None] = {"PARI matdet": seconds(pari) if pari else None}
+        if crossings <= 50:
+            peers["python-flint interpolation"] = seconds(partial(by_interpolation, minor))
+            peers["sympy DomainMatrix"] = seconds(as_sympy(minor).det, least=0.0)
         ours = seconds(lambda w=word: kt.Diagram.from_braid(w).alexander_polynomial())
-        row(f"{crossings} crossings: Alexander polynomial", ours, {k: v for k, v in peers.items() if v or k == "PARI matdet"})
+        row(f"{crossings} crossings: Alexander polynomial", ours, peers)
 
 
 def first_picture_seconds(word: list[int]) -> float:
