@@ -13,7 +13,7 @@ from kt_widgets.errors import KtError
 from kt_widgets.figures.arrange import moved
 from kt_widgets.figures.drawing import Drawing
 from kt_widgets.figures.lettering import extent
-from kt_widgets.figures.presets import Preset, label_size, preset_named
+from kt_widgets.figures.presets import PALETTE, Preset, label_size, preset_named
 from kt_widgets.figures.scene import Arrow, Dot, Item, Label, Point, Region, Scene, Stroke
 from kt_widgets.figures.tables import typeset
 from kt_widgets.groups.fox import Visit
@@ -369,7 +369,8 @@ def cover_scene(
     strip = _Strip(spacing, low, high, (margin, 0.0), _edges(weights, spacing, look), look)
     items: list[Item] = []
     for i, (g, edge) in enumerate(strip.edges.items()):
-        tint = i if colours is None else colours[g]
+        # Black, the last of the palette, is for the trace.
+        tint = (i if colours is None else colours[g]) % (len(PALETTE) - 1)
         for k in range(low, high + 1):
             if strip.shows(g, k):
                 items += _edge_items(strip, edge, k, tint)

@@ -274,6 +274,7 @@ class View {
     for (const node of this.root.querySelectorAll("[data-set]")) {
       const name = node.dataset.set;
       const field = node.matches("form") ? node.querySelector("input, textarea") : node;
+      if (this.get(name) == null) this.set(name, field.value);
       follow(name, () => { if (field.value !== this.get(name)) field.value = this.get(name) ?? ""; });
       node.addEventListener(node.matches("form") ? "submit" : "change", (event) => {
         event.preventDefault();
