@@ -35,8 +35,8 @@ _GROWTH = (1.0, 1.2, 1.45)
 _ARROW_AT = (0.5, 0.42, 0.58, 0.34, 0.66, 0.26, 0.74)
 _ARROW_BEND = 0.35
 _LEAST_WIDTH, _MOST_WIDTH = 36.0, 5000.0
-# Larger diagrams are not told crossing by crossing.
-_DESCRIBED = 30
+# Larger diagrams are not told crossing by crossing; those of more arcs or crossings carry no letters.
+_DESCRIBED, _LETTERED = 30, 120
 
 
 def diagram(
@@ -53,7 +53,8 @@ def diagram(
     """Draw a link diagram.
 
     Under-strands have real gaps, so the picture stands on any background. Arcs carry the names of their
-    Wirtinger generators; a label for which there is no room clear of everything is left out.
+    Wirtinger generators; a label for which there is no room clear of everything is left out, and diagrams of
+    more than 120 arcs carry none.
 
     Parameters
     ----------
@@ -93,7 +94,8 @@ def diagram(
     """
     look = preset_named(preset)
     layout = lay_out(d.slots, d.signs, d.circles, outer)
-    show = _Shown(labels, arrows, crossings, colour)
+    few = max(len(d.arcs), len(d.slots)) <= _LETTERED
+    show = _Shown(labels and few, arrows, crossings and few, colour)
     if ax is not None:
         room = ax.get_window_extent()
         points = 72 / ax.get_figure(root=True).dpi  # type: ignore[union-attr]

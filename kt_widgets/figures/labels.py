@@ -53,6 +53,17 @@ class Obstacles:
     radii: Floats
     owners: NDArray[np.intp]
 
+    def near(self, path: Path, reach: float) -> Obstacles:
+        """The obstacles no farther than `reach` from the box round a path."""
+        x, y = self.points.real, self.points.imag
+        kept = (
+            (x >= path.real.min() - reach)
+            & (x <= path.real.max() + reach)
+            & (y >= path.imag.min() - reach)
+            & (y <= path.imag.max() + reach)
+        )
+        return Obstacles(self.points[kept], self.radii[kept], self.owners[kept])
+
 
 def place_labels(
     wishes: Sequence[Wish], obstacles: Obstacles, frame: tuple[float, float], gap: float
@@ -64,7 +75,9 @@ def place_labels(
 
     The labels with the fewest possible spots choose first; ties go to the earlier one.
     """
-    beside: list[tuple[Path, Floats]] = [_beside(wish, obstacles, frame, gap) for wish in wishes]
+    reach = [4 * max(wish.width, wish.height) + 20 * gap for wish in wishes]
+    near = [obstacles.near(wish.path, far) for wish, far in zip(wishes, reach, strict=True)]
+    beside = [_beside(wish, there, frame, gap) for wish, there in zip(wishes, near, strict=True)]
     order = sorted(range(len(wishes)), key=lambda index: (wishes[index].around, len(beside[index][0]), index))
     spots: list[Spot | None] = [None] * len(wishes)
     boxes: list[tuple[complex, float, float]] = []
@@ -82,7 +95,8 @@ def place_labels(
             without.append(index)
     for index in without:
         wish = wishes[index]
-        spot = _led(wish, obstacles, frame, gap, boxes, lines)
+        far = (_LEADERS[-1] + 3) * max(wish.width, wish.height) + 4 * gap
+        spot = _led(wish, obstacles.near(wish.path, far), frame, gap, boxes, lines)
         if spot and spot.leader:
             spots[index] = spot
             boxes.append((spot.centre, wish.width, wish.height))

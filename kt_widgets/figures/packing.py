@@ -22,8 +22,8 @@ Floats: TypeAlias = NDArray[np.float64]
 
 _TOLERANCE = 1e-12
 _NEWTON_STEPS = 100
-# Below this many circles a dense solve is faster than loading a sparse solver.
-_DENSE = 500
+# Up to so many circles a dense solve is faster than loading a sparse solver.
+_DENSE = 160
 
 
 @dataclass(frozen=True)
