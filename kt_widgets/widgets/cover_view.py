@@ -30,7 +30,7 @@ class CoverView(View):
         return (
             "<h3>Infinite cyclic cover, the boundary of a lifted 2-cell traced</h3>"
             + bodies.stepper()
-            + bodies.picture(drawing, "cover", _python(subject), traces=True)
+            + bodies.picture(drawing, "cover", f"kt.figures.cover({subject.python}, trace=1)", traces=True)
         )
 
     def make_drawing(self, subject: Subject) -> Drawing:
@@ -43,10 +43,3 @@ def _drawing(subject: Subject, relators: Sequence[int]) -> Drawing:
     if subject.diagram:
         colours = dict(zip(subject.cover.presentation.generators, arc_colours(subject.diagram), strict=True))
     return Drawing(cover_scene(subject.cover, relators, preset="screen", colours=colours))
-
-
-def _python(subject: Subject) -> str:
-    if subject.diagram:
-        return f"kt.figures.cover(kt.Diagram.parse({subject.text!r}).cover(), trace=1)"
-    cover = f"kt.Cover(kt.Presentation.parse({subject.text!r}), {subject.cover.weights})"
-    return f"kt.figures.cover({cover}, trace=1)"

@@ -46,7 +46,7 @@ class ExplanationView(View):
             entry = _entry(self.subject, change["new"])
             if entry:
                 drawing = self.make_drawing(self.subject)
-                python = f"kt.figures.explain(cover.chains(), entry={entry!r})"
+                python = f"kt.figures.explain({self.subject.python}.chains(), entry={entry!r})"
                 picture = bodies.picture(drawing, "entry", python)
                 self.body = self.whole(f"<h3>The {drawing.scene.title}</h3>{picture}")
             elif not change["new"]:

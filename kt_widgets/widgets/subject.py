@@ -65,6 +65,13 @@ class Subject:
         """The line that was or could be typed to get this subject, its weights apart."""
         return self.typed or (self.diagram.source if self.diagram else str(self.cover.presentation))
 
+    @property
+    def python(self) -> str:
+        """The Python that makes the cover."""
+        if self.diagram:
+            return f"kt.Diagram.parse({self.text!r}).cover()"
+        return f"kt.Cover(kt.Presentation.parse({self.text!r}), {self.cover.weights})"
+
     @cached_property
     def links(self) -> dict[str, list[str]]:
         """What belongs together, see `kt_widgets.figures.links`."""

@@ -123,16 +123,18 @@ def test_focus_selection_stepping_and_errors(lab: Any, chromium_page: Any) -> No
     assert places(first.locator(".kt-linked[data-place]")) == set()
 
 
-def test_one_model_shown_twice(lab: Any, chromium_page: Any) -> None:
+def test_ids_are_unique_on_the_page(lab: Any, chromium_page: Any) -> None:
     page = chromium_page
-    lab.open(
-        page,
-        notebook(
-            lab.folder, "twice.ipynb", "import kt_widgets as kt\nb = kt.Workbench('braid 1 1 1'); b", "b"
-        ),
+    # One shown twice, and another one of the same diagram.
+    cells = (
+        "import kt_widgets as kt\nb = kt.Workbench('braid 1 1 1'); b",
+        "b",
+        "kt.Workbench('braid 1 1 1')",
     )
+    lab.open(page, notebook(lab.folder, "three.ipynb", *cells))
     lab.run(page)
-    page.locator(".kt-workbench").nth(1).wait_for()
+    page.locator(".kt-workbench").nth(2).wait_for()
+    page.locator(".kt-workbench").nth(2).locator("input[type=range]").wait_for()
     ids = page.locator(".kt-view [id]").evaluate_all("nodes => nodes.map((node) => node.id)")
     assert len(ids) == len(set(ids)) > 0
 

@@ -18,14 +18,15 @@ const KINDS = {
   generator: "generator", arc: "arc", crossing: "crossing", component: "component", face: "face", strand: "strand",
 };
 const PLURALS = { entry: "entries", vertex: "vertices" };
-let views = 0;
+// Counted on the page: every widget has a copy of this module to itself.
+const page = (globalThis[Symbol.for("kt-views")] ??= { views: 0 });
 
 export function render({ model, el }) {
   return new View(model, el).close;
 }
 
 // A page without kernel: every element with data-view becomes a view; all share the one state given.
-export function linkPage(page, state) {
+export function linkPage(root, state) {
   const values = { links: {}, steps: [], focus: "", selected: "", step: 0, ...state };
   const listeners = {};
   const get = (name) => values[name];
@@ -35,7 +36,7 @@ export function linkPage(page, state) {
     for (const listener of listeners[`change:${name}`] ?? []) listener();
   };
   const on = (event, listener) => (listeners[event] ??= []).push(listener);
-  for (const el of page.querySelectorAll("[data-view]")) {
+  for (const el of root.querySelectorAll("[data-view]")) {
     const body = el.innerHTML;
     el.textContent = "";
     render({ model: { get: (name) => (name === "body" ? body : get(name)), set, on }, el });
@@ -158,7 +159,7 @@ function keepKeys(root) {
 class View {
   constructor(model, el) {
     this.model = model;
-    this.prefix = `view${(views += 1)}-`;
+    this.prefix = `view${(page.views += 1)}-`;
     this.root = element("div", { class: "kt-view" });
     this.live = element("div", { class: "kt-live", "aria-live": "polite" });
     this.heard = new Map();
