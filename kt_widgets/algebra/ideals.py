@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
+from bisect import bisect
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from itertools import combinations
 from math import comb
 from operator import index
 from typing import Any, TypeAlias
@@ -297,35 +297,49 @@ def _saturate(basis: list[LaurentPolynomial]) -> None:
 
 
 def _canonical(generators: Sequence[LaurentPolynomial]) -> tuple[LaurentPolynomial, ...]:
-    """The canonical basis of the ideal of some nonzero polynomials.
-
-    The Hermite form of their multiples by powers of t, up to the degree where Bezout's identity over Q is
-    found, has nearly all of the basis, with coefficients as small as the ideal allows; `_close` and
-    `_saturate` bring the rest.
-    """
+    """The canonical basis of the ideal of some nonzero polynomials."""
     divisor = gcd_of(generators)
-    rest = [f.exact_division(divisor) for f in generators]
-    if not rest or any(f.is_unit() for f in rest):
-        return (divisor,) if rest else ()
-    span = max(f.span() for f in rest)
+    rest = [f.exact_division(divisor).normal_form() for f in generators]
+    if any(f.is_unit() for f in rest):
+        return (divisor,)
+    span = max((f.span() for f in rest), default=0)
     if span > MAX_IDEAL_SPAN:
         raise LimitError(
             f"the generators of the ideal, divided by {divisor}, reach span {span}",
             accepted=f"spans up to {MAX_IDEAL_SPAN}, or a principal ideal",
         )
-    length = 2 * span + 1
+    # Short ones first; a few generators mostly span what all of them do.
+    rest.sort(key=lambda f: (f.span(), sum(map(abs, f.coefficients)), f.coefficients))
+    basis: list[LaurentPolynomial] = []
+    while rest:
+        basis = _spanned([*basis, *rest[:_BATCH]])
+        rest = [f for f in rest[_BATCH:] if _divided(f, basis)[1]]
+    basis = [divisor * f for f in basis]
+    for i, f in enumerate(basis):
+        basis[i] = _divided(f, basis[:i])[1]
+    return tuple(basis)
+
+
+_BATCH = 4
+
+
+def _spanned(generators: Sequence[LaurentPolynomial]) -> list[LaurentPolynomial]:
+    """A saturated strong Groebner basis.
+
+    The Hermite form of the generators' multiples by powers of t, up to the degree where Bezout's identity
+    over Q is found, has nearly all of it, with coefficients as small as the ideal allows; `_close` and
+    `_saturate` bring the rest.
+    """
+    length = 2 * max(f.span() for f in generators) + 1
     rows = [
         [0] * shift + list(f.coefficients[::-1]) + [0] * (length - 1 - f.span() - shift)
-        for f in rest
+        for f in generators
         for shift in range(length - f.span())
     ]
     basis: list[LaurentPolynomial] = []
     _close(basis, [LaurentPolynomial(row[::-1]).normal_form() for row in hermite_rows(rows)])
     _saturate(basis)
-    basis = [divisor * f for f in basis]
-    for i, f in enumerate(basis):
-        basis[i] = _divided(f, basis[:i])[1]
-    return tuple(basis)
+    return basis
 
 
 # Combinations
@@ -496,18 +510,41 @@ _Place: TypeAlias = tuple[tuple[int, ...], tuple[int, ...]]
 
 
 def _minors(core: LaurentMatrix, size: int) -> Iterator[tuple[_Place, LaurentPolynomial]]:
-    """The nonzero minors of a size with their rows and columns; the one of size 0 is 1."""
+    """The nonzero minors of a size with their rows and columns, in order; the one of size 0 is 1.
+
+    Expanded along the last row: the minors of the first rows serve all sets of rows that begin with them.
+    """
     height, width = core.shape
     count = comb(height, size) * comb(width, size)
     if count > MAX_MINORS:
         raise LimitError(
             f"{count} minors of size {size} in a core of shape {core.shape}", accepted=f"at most {MAX_MINORS}"
         )
-    for rows in combinations(range(height), size):
-        for columns in combinations(range(width), size):
-            minor = core.submatrix(rows, columns).determinant()
-            if minor:
-                yield (rows, columns), minor
+    lines = core.sparse_rows()
+
+    def extended(
+        rows: tuple[int, ...], minors: dict[tuple[int, ...], LaurentPolynomial]
+    ) -> Iterator[tuple[_Place, LaurentPolynomial]]:
+        if len(rows) == size:
+            yield from (((rows, columns), minors[columns]) for columns in sorted(minors))
+            return
+        missing = size - len(rows)
+        for i in range(rows[-1] + 1 if rows else 0, height - missing + 1):
+            sums: dict[tuple[int, ...], LaurentPolynomial] = {}
+            for columns, minor in minors.items():
+                negative = -minor
+                for j, f in lines[i].items():
+                    place = bisect(columns, j)
+                    if place and columns[place - 1] == j:
+                        continue
+                    key = (*columns[:place], j, *columns[place:])
+                    signed = negative if (len(columns) - place) % 2 == 0 else minor
+                    old = sums.get(key)
+                    sums[key] = -signed * f if old is None else subtract_product(old, signed, f)
+            yield from extended((*rows, i), {key: f for key, f in sums.items() if f})
+
+    one = LaurentPolynomial.constant(1, core.over)
+    yield from extended((), {(): one})
 
 
 def _core(matrix: LaurentMatrix, k: int) -> tuple[Elimination, int]:
@@ -554,13 +591,19 @@ def fitting_ideal(matrix: LaurentMatrix, k: int) -> Ideal:
     """
     _check_integral(matrix)
     elimination, size = _core(matrix, k)
-    ideal = Ideal([])
-    for _, minor in _minors(elimination.core, size):
-        if minor not in ideal:
-            ideal = Ideal([*ideal.basis, minor])
-        if ideal.is_unit():
+    return Ideal([minor for _, minor in _minors(_without_redundant_columns(elimination.core), size)])
+
+
+def _without_redundant_columns(core: LaurentMatrix) -> LaurentMatrix:
+    """Leave out relations that are combinations of the others, as a knot's matrix has one."""
+    columns = list(range(core.shape[1]))
+    lines = core.sparse_rows()
+    while (vector := kernel_vector(lines, columns, ring(core.over))) is not None:
+        redundant = next((j for j in sorted(vector) if vector[j].is_unit()), None)
+        if redundant is None:
             break
-    return ideal
+        columns.remove(redundant)
+    return core.submatrix(range(core.shape[0]), columns)
 
 
 def fitting_divisor(matrix: LaurentMatrix, k: int) -> LaurentPolynomial:
@@ -572,18 +615,7 @@ def fitting_divisor(matrix: LaurentMatrix, k: int) -> LaurentPolynomial:
     LaurentPolynomial('-1 + t', over='Q')
     """
     elimination, size = _core(matrix, k)
-    core = elimination.core
-    base = ring(matrix.over)
-    columns = list(range(core.shape[1]))
-    while size == core.shape[0] < len(columns):
-        # A relation that is a combination of others changes nothing; a knot's matrix has one.
-        vector = kernel_vector(core.sparse_rows(), columns, base)
-        assert vector is not None
-        redundant = next((j for j in sorted(vector) if vector[j].is_unit()), None)
-        if redundant is None:
-            break
-        columns.remove(redundant)
-    core = core.submatrix(range(core.shape[0]), columns)
+    core = _without_redundant_columns(elimination.core)
     return gcd_of((minor for _, minor in _minors(core, size)), matrix.over)
 
 

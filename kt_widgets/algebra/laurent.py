@@ -461,20 +461,32 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         """
         return _made(0, self._poly.gcd(self._given(other)._poly), self._ring)
 
-    def inverse_modulo(self, modulus: LaurentPolynomial) -> LaurentPolynomial | None:
-        """Over a field: the g with ``self * g == 1`` modulo another polynomial; None if they share a factor.
+    def bezout(
+        self, other: LaurentPolynomial | Scalar
+    ) -> tuple[LaurentPolynomial, LaurentPolynomial, LaurentPolynomial]:
+        """Over a field: the gcd d in normal form, and s, u with ``s * self + u * other == d``.
+
+        Raises
+        ------
+        AlgebraError
+            Over Z.
 
         Examples
         --------
         >>> f, g = (LaurentPolynomial.parse(text, "Q") for text in ("t - 1", "1 - t + t^2"))
-        >>> f.inverse_modulo(g), f.inverse_modulo(f * g)
-        (LaurentPolynomial('-t', over='Q'), None)
+        >>> print(*f.bezout(g))
+        1 -t 1
         """
-        modulus = self._divisor(modulus)
-        divisor, factor, _ = (self._poly % modulus._poly).xgcd(modulus._poly)
-        if len(divisor) != 1:
-            return None
-        return _trimmed(-self._low, factor, self._ring)
+        if not self._ring.is_field:
+            raise AlgebraError("Z[t,1/t] has no Bezout identity", accepted="change_ring('Q')")
+        given = self._given(other)
+        divisor, s, u = self._poly.xgcd(given._poly)
+        base = self._ring
+        return (
+            _made(0, divisor, base),
+            _trimmed(-self._low, s, base),
+            _trimmed(-given._low, u, base),
+        )
 
     def is_unit(self) -> bool:
         """Whether it has an inverse: +-t^k over Z, c t^k with c nonzero over a field."""

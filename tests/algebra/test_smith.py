@@ -10,6 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from kt_widgets.algebra.diagonal import Core
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.algebra.smith import SmithForm, invariant_factors, smith_form
@@ -70,6 +71,18 @@ def test_the_certificate_holds(a):
     assert s.diagonal == invariant_factors(a)
     assert a.rank() == sum(map(bool, s.diagonal))
     assert read(s.to_json()) == s
+
+
+@given(matrices(most=3))
+@settings(deadline=None)
+def test_euclid_finds_the_same_factors(a):
+    core = Core(a)
+    core.compress()
+    zeros = min(a.shape) - len(core.rows)
+    factors = core.euclid()
+    assert (*factors, *[LaurentPolynomial((), 0, a.over)] * zeros) == invariant_factors(a)
+    entries = {(i, i): f for i, f in enumerate(factors)}
+    assert core.transforms().verify(a, LaurentMatrix.from_entries(entries, a.shape, a.over))
 
 
 @given(disguised())
