@@ -1,4 +1,4 @@
-"""The figure of an infinite cyclic cover: the strip of lifted edges, and boundaries of 2-cells traced on."""
+"""The figure of an infinite cyclic cover: a strip of lifted edges, and boundaries of 2-cells traced on it."""
 
 from __future__ import annotations
 
@@ -28,9 +28,8 @@ MAX_EDGES = 16
 MAX_WINDOW = 60
 """The longest window drawn: more vertices than this leave no room for the edges between them."""
 
-_STEEPEST = math.radians(
-    84
-)  # between a fan's outermost arc and the line; 90 degrees would touch the next fan
+# The angle between a fan's outermost arc and the line; at 90 degrees it would touch the next fan.
+_STEEPEST = math.radians(84)
 _SAMPLES = 36
 _LONGEST = 12  # letters of a relator in the title
 
@@ -270,7 +269,7 @@ def _turn(before: Path, after: Path, centre: Point) -> Path:
     )
 
 
-def _trace(strip: _Strip, relator: int, visits: Sequence[Visit]) -> list[Item]:
+def _trace(strip: _Strip, visits: Sequence[Visit]) -> list[Item]:
     """The boundary of a lifted 2-cell, letter by letter: a stroke, a number and an arrow head for each."""
     preset = strip.preset
     lanes = [_lane(strip, v, *lane) for v, lane in zip(visits, _lanes(visits, strip.edges), strict=True)]
@@ -374,8 +373,8 @@ def cover_scene(
         for k in range(low, high + 1):
             if strip.shows(g, k):
                 items += _edge_items(strip, edge, k, tint)
-    for r, trace in traces.items():
-        items += _trace(strip, r, trace)
+    for trace in traces.values():
+        items += _trace(strip, trace)
     heights = [y for item in items if isinstance(item, Stroke) for _, y in item.points]
     rail = min(heights, default=0.0) - 0.9 * look.label
     items += _rail_items(strip, rail)

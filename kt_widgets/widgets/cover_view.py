@@ -9,7 +9,7 @@ from kt_widgets.figures.cover_figure import cover_scene
 from kt_widgets.figures.diagram_figure import arc_colours
 from kt_widgets.figures.drawing import Drawing
 from kt_widgets.widgets.subject import Subject
-from kt_widgets.widgets.view import View
+from kt_widgets.widgets.view import View, drawn_or_said
 
 __all__ = ["CoverView"]
 
@@ -42,4 +42,6 @@ def _drawing(subject: Subject, relators: Sequence[int]) -> Drawing:
     colours = None
     if subject.diagram:
         colours = dict(zip(subject.cover.presentation.generators, arc_colours(subject.diagram), strict=True))
-    return Drawing(cover_scene(subject.cover, relators, preset="screen", colours=colours))
+    return drawn_or_said(
+        lambda: Drawing(cover_scene(subject.cover, relators, preset="screen", colours=colours))
+    )

@@ -7,7 +7,7 @@ from kt_widgets.figures.diagram_figure import diagram
 from kt_widgets.figures.drawing import Drawing
 from kt_widgets.figures.tables import lines_scene
 from kt_widgets.widgets.subject import Subject
-from kt_widgets.widgets.view import View
+from kt_widgets.widgets.view import View, drawn_or_said
 
 __all__ = ["DiagramView"]
 
@@ -29,6 +29,7 @@ class DiagramView(View):
         return "<h3>Diagram</h3>" + bodies.picture(self.make_drawing(subject), "diagram", python)
 
     def make_drawing(self, subject: Subject) -> Drawing:
-        if subject.diagram is None:
+        d = subject.diagram
+        if d is None:
             return Drawing(lines_scene(["given as a presentation"], "no diagram"))
-        return diagram(subject.diagram, preset="screen")
+        return drawn_or_said(lambda: diagram(d, preset="screen"))

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import logging
 from base64 import b64encode
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from contextlib import contextmanager
 from importlib.resources import files
+from textwrap import wrap
 from typing import Any
 
 import anywidget
@@ -15,9 +16,10 @@ import traitlets
 
 from kt_widgets.errors import KtError
 from kt_widgets.figures.drawing import Drawing
+from kt_widgets.figures.tables import lines_scene
 from kt_widgets.widgets.subject import Subject, Viewable
 
-__all__ = ["SHARED", "View", "bundle", "linked", "reporting"]
+__all__ = ["SHARED", "View", "bundle", "drawn_or_said", "linked", "reporting"]
 
 SHARED = ("focus", "selected", "step")
 """The traits that linked views have in common; the browser keeps them equal, without the kernel."""
@@ -63,6 +65,14 @@ def bundle(
     if latex:
         data["text/latex"] = latex
     return data, {"image/png": {"width": round(drawing.scene.width * 4 / 3), "needs_background": "light"}}
+
+
+def drawn_or_said(draw: Callable[[], Drawing]) -> Drawing:
+    """The picture, or the words that say why there is none: the other views are worth having without it."""
+    try:
+        return draw()
+    except KtError as error:
+        return Drawing(lines_scene(wrap(str(error).replace("$", ""), 70), "no picture"))
 
 
 class View(anywidget.AnyWidget):

@@ -94,6 +94,14 @@ def test_a_wrong_value_is_refused_at_once() -> None:
         Workbench(3)  # type: ignore[arg-type]
 
 
+def test_what_is_too_large_for_a_picture_is_said_in_its_place() -> None:
+    bench = Workbench("< x, y | x^71 = y^70 >")
+    assert "cannot be drawn" in bench.cover.body.replace("\n", " ")
+    assert bench.cover.steps
+    assert 'data-place="entry:2:1:1"' in bench.boundary2.body
+    bench.close()
+
+
 def test_weights_given_by_the_cover_stay_when_it_is_shown() -> None:
     bench = Workbench("braid 1 1 1")
     cover = kt.Cover(kt.Presentation.parse("< a, b | [a, b] >"), {"a": 2, "b": 3})
