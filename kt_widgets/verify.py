@@ -216,12 +216,21 @@ def _compare(place: str, found: Matrix, expected: Matrix) -> None:
 # ------------------------------------------------------------------------- reading, with strict types
 
 
-@dataclass(frozen=True)
+@dataclass
 class Item:
-    """A value of the file and its place."""
+    """A value of the file, the value that holds it, and the key, index or entry at which it is held."""
 
+    __slots__ = ("at", "holder", "value")
     value: Any
-    place: str
+    holder: Item | None
+    at: str | int | tuple[int, int]
+
+    @property
+    def place(self) -> str:
+        before = self.holder.place if self.holder else ""
+        if isinstance(self.at, str):
+            return f"{before}.{self.at}".strip(".")
+        return f"{before}[{self.at}]" if isinstance(self.at, int) else f"{before}[{self.at[0]},{self.at[1]}]"
 
     def refuse(self, what: str) -> Refusal:
         return Refusal(self.place or "dossier", what)
@@ -236,14 +245,14 @@ class Item:
         for key in keys:
             if key not in self.value:
                 raise self.refuse(f"key {json.dumps(key)} is missing")
-        return [Item(self.value[key], f"{self.place}.{key}".lstrip(".")) for key in keys]
+        return [Item(self.value[key], self, key) for key in keys]
 
     def items(self, length: int | None = None) -> list[Item]:
         if type(self.value) is not list:
             raise self.refuse("a list is expected")
         if length is not None and len(self.value) != length:
             raise self.refuse(f"{len(self.value)} items, where {length} are expected")
-        return [Item(value, f"{self.place}[{i}]") for i, value in enumerate(self.value, 1)]
+        return [Item(value, self, i) for i, value in enumerate(self.value, 1)]
 
     def integer(self, low: int, high: int) -> int:
         # type(), not isinstance(): True is no number here.
@@ -297,7 +306,7 @@ class Item:
             spot = (i.integer(1, rows), j.integer(1, columns))
             if spot <= last:
                 raise item.refuse("entries are listed row by row, each once")
-            matrix.entries[spot] = Item(entry.value, f"{self.place}[{spot[0]},{spot[1]}]").poly(ring)
+            matrix.entries[spot] = Item(entry.value, self, spot).poly(ring)
             if not matrix.entries[spot]:
                 raise item.refuse("entries that are 0 are left out")
             last = spot
@@ -464,12 +473,12 @@ def _read_ideal(item: Item, k: int, core: Matrix) -> Ideal:
 
 
 def _read(data: Any) -> Dossier:
-    form, version, kind, body = Item(data, "").fields("format", "version", "kind", "data")
+    form, version, kind, body = Item(data, None, "").fields("format", "version", "kind", "data")
     for item, name in ((form, FORMAT), (kind, KIND)):
         if item.text() != name:
             raise item.refuse(f"{json.dumps(name)} is expected")
     version.integer(VERSION, VERSION)
-    digests, *sections = Item(body.value, "").fields("digests", *SECTIONS)
+    digests, *sections = Item(body.value, None, "").fields("digests", *SECTIONS)
     subject, planar, presentation, chains, homology, smith, ideals, polynomial = sections
     diagram = _read_diagram(planar)
     g, r = len(diagram.arcs), len(diagram.crossings)
@@ -485,8 +494,8 @@ def _read(data: Any) -> Dossier:
     size = core.fields("shape", "entries")[0].items(2)[0].integer(max(0, g - r), min(g, MAX_CORE))
     remainder = core.matrix(size, r - g + size)
     return Dossier(
-        {item.place: item.value for item in sections},
-        {item.place[8:]: item.text() for item in digests.fields(*SECTIONS)},
+        {name: item.value for name, item in zip(SECTIONS, sections, strict=True)},
+        {name: item.text() for name, item in zip(SECTIONS, digests.fields(*SECTIONS), strict=True)},
         subject.fields("line")[0].text(),
         diagram,
         generators.texts(g),
@@ -609,7 +618,7 @@ def _typed(line: Item) -> tuple[str, list[list[int]], list[int], int]:
 
 
 def _subject(d: Dossier) -> str:
-    line, diagram = Item(d.line, "subject.line"), d.diagram
+    line, diagram = Item(d.line, None, "subject.line"), d.diagram
     notation, rows, signs, circles = _typed(line)
     if notation == "planar":
         stated = [list(row) for row in diagram.crossings]
