@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import os
+import socket
 import subprocess
 import sys
 import time
@@ -161,12 +162,29 @@ def served(process: subprocess.Popen[str], seconds: float = 60) -> str:
     raise AssertionError("no address was printed")
 
 
+def fetched(address: str, token: str, seconds: float = 30) -> bytes:
+    """What the server answers, once it listens: the address is printed a moment earlier."""
+    request = urllib.request.Request(address, headers={"Authorization": f"token {token}"})
+    stop = time.monotonic() + seconds
+    while True:
+        try:
+            with urllib.request.urlopen(request, timeout=10) as answer:
+                return answer.read()
+        except OSError:
+            if time.monotonic() > stop:
+                raise
+            time.sleep(0.2)
+
+
 @pytest.mark.slow
 def test_lab_serves_the_trusted_start_notebook(tmp_path):
     pytest.importorskip("jupyterlab")
     environment = {**os.environ, "PYTHONPATH": str(ROOT), **jupyter_environment(tmp_path / "jupyter")}
+    with socket.socket() as probe:
+        probe.bind(("127.0.0.1", 0))
+        port = probe.getsockname()[1]
     process = subprocess.Popen(
-        [sys.executable, "-m", "kt_widgets", "lab", "--ServerApp.port=0", "--no-browser"],
+        [sys.executable, "-m", "kt_widgets", "lab", f"--port={port}", "--no-browser"],
         cwd=tmp_path,
         env=environment,
         stderr=subprocess.PIPE,
@@ -177,11 +195,7 @@ def test_lab_serves_the_trusted_start_notebook(tmp_path):
         address = served(process)
         assert "/lab/tree/start.ipynb?token=" in address
         base, token = address.split("/lab/")[0], address.split("token=")[1]
-        request = urllib.request.Request(
-            f"{base}/api/contents/start.ipynb", headers={"Authorization": f"token {token}"}
-        )
-        with urllib.request.urlopen(request, timeout=30) as answer:
-            cells = json.load(answer)["content"]["cells"]
+        cells = json.loads(fetched(f"{base}/api/contents/start.ipynb", token))["content"]["cells"]
         code = [cell for cell in cells if cell["cell_type"] == "code"]
         assert code
         assert all(cell["metadata"]["trusted"] for cell in code)
