@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import json
 import os
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from html import escape
 from importlib.resources import files
 from pathlib import Path
@@ -28,6 +28,18 @@ from kt_widgets.text.printing import polynomial_text
 __all__ = ["dossier", "page"]
 
 DATA = "dossier.json"
+FILES = (
+    "dossier.html",
+    DATA,
+    "verify.py",
+    "diagram.svg",
+    "diagram.pdf",
+    "cover.svg",
+    "cover.pdf",
+    "formulas.tex",
+)
+"""The files of a dossier."""
+
 LINE = 100
 """Longest value of the data file that stands on one line."""
 
@@ -69,9 +81,9 @@ def dossier(d: Diagram, out: str | os.PathLike[str]) -> tuple[Path, ...]:
     ['dossier.html', 'dossier.json', 'verify.py']
     """
     folder = Path(out)
+    _check_folder(folder)
     # Everything is made before anything is written, so that an error leaves the folder as it was.
-    contents = _contents(d)
-    _check_folder(folder, contents)
+    contents = dict(zip(FILES, _contents(d), strict=True))
     folder.mkdir(parents=True, exist_ok=True)
     for name, content in contents.items():
         part = folder / f".{name}.part"
@@ -80,28 +92,24 @@ def dossier(d: Diagram, out: str | os.PathLike[str]) -> tuple[Path, ...]:
     return tuple(folder / name for name in contents)
 
 
-def _contents(d: Diagram) -> dict[str, bytes]:
-    """The files of a dossier by name."""
+def _contents(d: Diagram) -> Iterator[bytes]:
+    """The contents of `FILES`, in order."""
     evidence = Evidence.of(d)
     evidence.verify()
-    drawings = {"diagram": diagram_drawing(d), "cover": cover(d.cover())}
-    contents = {
-        "dossier.html": page(evidence).encode(),
-        DATA: (_laid_out(json.loads(evidence.to_json())) + "\n").encode(),
-        "verify.py": Path(verifier.__file__).read_bytes(),
-    }
-    for name, drawing in drawings.items():
-        contents[f"{name}.svg"] = drawing.svg().encode()
-        contents[f"{name}.pdf"] = drawing.pdf()
-    contents["formulas.tex"] = latex_document(d).encode()
-    return contents
+    yield page(evidence).encode()
+    yield (_laid_out(json.loads(evidence.to_json())) + "\n").encode()
+    yield Path(verifier.__file__).read_bytes()
+    for drawing in (diagram_drawing(d), cover(d.cover())):
+        yield drawing.svg().encode()
+        yield drawing.pdf()
+    yield latex_document(d).encode()
 
 
-def _check_folder(folder: Path, contents: Mapping[str, bytes]) -> None:
+def _check_folder(folder: Path) -> None:
     """Refuse a folder in which a file that is not ours would be lost."""
     if folder.exists() and not folder.is_dir():
         raise KtError("this is a file, not a folder", where=str(folder), accepted="a folder, or a new name")
-    taken = [name for name in contents if (folder / name).exists()]
+    taken = [name for name in FILES if (folder / name).exists()]
     if taken and not _is_dossier(folder / DATA):
         raise KtError(
             f"{taken[0]} is there already and is not from a dossier",
@@ -221,13 +229,14 @@ def _maths(text: str) -> str:
 
 def _summary(evidence: Evidence) -> str:
     d, data = evidence.diagram, evidence.to_data()
-    components = _counted(len(d.components), "component")
+    counts = f"{_counted(len(d.components), 'component')}, {_counted(len(d.crossings), 'crossing')}"
+    writhe = polynomial_text({0: d.writhe}, "unicode")
     ideals = []
     for record in data["ideals"]["alexander"]:
         number = str(record["k"]).translate(_SUBSCRIPTS)
         ideals.append(f"E{number} = ({', '.join(map(_unicode, record['basis'])) or '0'})")
     return (
-        f"{components}, {_counted(len(d.crossings), 'crossing')}, writhe {d.writhe}. "
+        f"{counts}, writhe {writhe}. "
         f"Alexander polynomial {_maths(_unicode(data['alexander_polynomial']))}"
         f"{'' if len(d.components) == 1 else ' up to units'}. Alexander ideals {_maths(', '.join(ideals))}."
     )
