@@ -19,9 +19,12 @@ __all__ = [
     "Ring",
     "RingName",
     "hermite_rows",
+    "hermite_transform",
+    "integer_inverse",
     "integer_kernel",
     "integer_solution",
     "ring",
+    "smith_diagonal",
 ]
 
 RingName: TypeAlias = str | int
@@ -262,7 +265,7 @@ def integer_kernel(rows: Sequence[Sequence[int]], columns: int) -> list[list[int
     kernel = [row[height:] for row in hermite if not any(row[:height])]
     if not kernel:
         return []
-    reduced = [[int(x) for x in row] for row in fmpz_mat(kernel).lll().tolist()]
+    reduced = _integers(fmpz_mat(kernel).lll())
     return [row if next(x for x in row if x) > 0 else [-x for x in row] for row in reduced]
 
 
@@ -276,6 +279,54 @@ def hermite_rows(rows: Sequence[Sequence[int]]) -> list[list[int]]:
     """
     reduced = fmpz_mat([list(row) for row in rows]).hnf().tolist() if rows else []
     return [[int(x) for x in row] for row in reduced if any(row)]
+
+
+def hermite_transform(rows: Sequence[Sequence[int]]) -> tuple[list[list[int]], list[list[int]]]:
+    """The Hermite normal form H, zero rows last, and an invertible T with T rows = H.
+
+    The Hermite form of the rows with an identity beside them, so that T does not depend on the algorithm.
+
+    Examples
+    --------
+    >>> hermite_transform([[4], [6]])
+    ([[2], [0]], [[2, -1], [3, -2]])
+    """
+    width = len(rows[0]) if rows else 0
+    augmented = [[*row, *(int(i == k) for k in range(len(rows)))] for i, row in enumerate(rows)]
+    hermite = _integers(fmpz_mat(augmented).hnf()) if rows else []
+    return [row[:width] for row in hermite], [row[width:] for row in hermite]
+
+
+def integer_inverse(rows: Sequence[Sequence[int]]) -> list[list[int]]:
+    """The inverse of a matrix of determinant 1 or -1.
+
+    Examples
+    --------
+    >>> integer_inverse([[2, 1], [1, 0]])
+    [[0, 1], [1, -2]]
+    """
+    # python-flint 0.9's inv(integer=True) gives the negative of the inverse where the determinant is -1.
+    if not rows:
+        return []
+    return [[int(x.p) for x in row] for row in fmpz_mat([list(row) for row in rows]).inv().tolist()]
+
+
+def smith_diagonal(rows: Sequence[Sequence[int]]) -> list[int]:
+    """The diagonal of the Smith normal form over Z: 0 or more, each dividing the next.
+
+    Examples
+    --------
+    >>> smith_diagonal([[2, 0, 0], [0, 3, 0]])
+    [1, 6]
+    """
+    if not rows or not rows[0]:
+        return []
+    form = fmpz_mat([list(row) for row in rows]).snf()
+    return [int(form[i, i]) for i in range(min(len(rows), len(rows[0])))]
+
+
+def _integers(matrix: fmpz_mat) -> list[list[int]]:
+    return [[int(x) for x in row] for row in matrix.tolist()]
 
 
 def integer_solution(rows: Sequence[Sequence[int]], target: Sequence[int]) -> list[int] | None:

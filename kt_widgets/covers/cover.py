@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import chain
@@ -13,6 +13,7 @@ from kt_widgets.algebra.ideals import Ideal, fitting_ideal
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.covers.chains import ChainComplex, sum_of_visits
+from kt_widgets.covers.cyclic import CyclicCover, branched_cover, cyclic_cover
 from kt_widgets.errors import AlgebraError, LimitError
 from kt_widgets.groups.fox import Visit, visits
 from kt_widgets.groups.presentations import Presentation
@@ -202,6 +203,46 @@ class Cover(Portable, kind="cover"):
         (0) (1 - t + t^2) (1)
         """
         return fitting_ideal(self.chains().boundary(2), k)
+
+    def cyclic_cover(self, n: int) -> CyclicCover:
+        """The unbranched n-fold cyclic cover: this cover divided by t^n.
+
+        Raises
+        ------
+        AlgebraError
+            Unless n is 1 or more.
+
+        Examples
+        --------
+        >>> Cover(Presentation.parse("< a, b | a b a = b a b >")).cyclic_cover(2).invariant_factors()
+        (3, 0)
+        """
+        return cyclic_cover(self, n)
+
+    def branched_cover(self, n: int, meridians: Sequence[Word | str] | None = None) -> CyclicCover:
+        """The n-fold cyclic cover with its boundary filled in along the lifts of powers of meridians.
+
+        Parameters
+        ----------
+        n : int
+        meridians : sequence of Word or str, optional
+            One for each component to branch over; by default those that the presentation carries as marks
+            "meridian:1", ..., as the Wirtinger presentation of a diagram does.
+
+        Raises
+        ------
+        AlgebraError
+            Unless n is 1 or more, and where there are no meridians or a letter of one is no generator.
+        ParseError
+            If a text is no word.
+
+        Examples
+        --------
+        >>> x = Cover(Presentation.parse("< x, y | x^3 = y^2 >"))
+        >>> print(x.branched_cover(5, meridians=["y x^-1"]), "|", x.branched_cover(3, meridians=["y x^-1"]))
+        5-fold branched cyclic cover, H_1 = 0 | 3-fold branched cyclic cover, H_1 = Z/2 + Z/2
+        """
+        return branched_cover(self, n, meridians)
 
     def __str__(self) -> str:
         weights = ", ".join(f"{name} -> {weight}" for name, weight in self.weights.items())

@@ -1,0 +1,246 @@
+"""Smith normal forms over Z with the transforms that prove them, and matrices of multiplication by t.
+
+An integer matrix is a `LaurentMatrix` over "Z" whose entries are constants.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from itertools import pairwise
+from typing import Any
+
+from kt_widgets.algebra.elimination import Transforms, eliminate
+from kt_widgets.algebra.flint_rings import hermite_transform, integer_inverse, smith_diagonal
+from kt_widgets.algebra.matrix import LaurentMatrix
+from kt_widgets.errors import AlgebraError, CertificateError, LimitError
+from kt_widgets.text.portable import Portable
+
+__all__ = [
+    "MAX_INTEGER_SIDE",
+    "IntegerSmithForm",
+    "at_root_of_unity",
+    "integer_factors",
+    "integer_smith_form",
+]
+
+MAX_INTEGER_SIDE = 3000
+"""Largest number of rows or columns of an integer matrix that is brought to Smith form."""
+
+
+@dataclass(frozen=True)
+class IntegerSmithForm(Portable, kind="integer smith form"):
+    """U A V = D over the integers, U and V invertible, D diagonal, each entry dividing the next.
+
+    The diagonal is not negative; ones come first and zeros last. All six matrices have constant entries.
+
+    Examples
+    --------
+    >>> s = integer_smith_form(LaurentMatrix([[4, 6], [2, 8]]))
+    >>> s.diagonal, s.verify()
+    ((2, 10), True)
+    """
+
+    matrix: LaurentMatrix
+    D: LaurentMatrix
+    U: LaurentMatrix
+    U_inverse: LaurentMatrix
+    V: LaurentMatrix
+    V_inverse: LaurentMatrix
+
+    @property
+    def diagonal(self) -> tuple[int, ...]:
+        """The diagonal of D."""
+        return tuple(int(self.D[i, i].coefficient(0)) for i in range(min(self.D.shape)))
+
+    @property
+    def factors(self) -> tuple[int, ...]:
+        """The cokernel: factors > 1, then a 0 for each free Z."""
+        return _cokernel(self.diagonal, self.D.shape[0])
+
+    def verify(self) -> bool:
+        """Check everything by multiplication.
+
+        Raises
+        ------
+        CertificateError
+            Naming the entry of a matrix or product that is wrong.
+        """
+        for name in _NAMES:
+            _check_integers(getattr(self, name), name)
+        Transforms(self.U, self.U_inverse, self.V, self.V_inverse).verify(
+            self.matrix, self.D, ("U", "A", "V")
+        )
+        for i, j, f in self.D.entries():
+            where = f"entry ({i + 1}, {j + 1}) of D"
+            if i != j:
+                raise CertificateError(f"D is {f} off the diagonal", where=where)
+            if f != f.normal_form():
+                raise CertificateError(f"{f} is negative", where=where)
+            if i and not self.D[i - 1, i - 1].divides(f):
+                raise CertificateError(f"{self.D[i - 1, i - 1]} does not divide {f}", where=where)
+        return True
+
+    def to_data(self) -> dict[str, Any]:
+        """The six matrices by name."""
+        return {name: getattr(self, name).to_data() for name in _NAMES}
+
+    @classmethod
+    def from_data(cls, data: Any) -> IntegerSmithForm:
+        """Read `to_data` back; call `verify` before believing it."""
+        return cls(*(LaurentMatrix.from_data(data[name]) for name in _NAMES))
+
+
+_NAMES = ("matrix", "D", "U", "U_inverse", "V", "V_inverse")
+
+
+def _check_integers(matrix: LaurentMatrix, name: str) -> None:
+    if matrix.over != "Z":
+        raise CertificateError(f"{name} is over {matrix.over!r}, not over the integers", where=name)
+    for i, j, f in matrix.entries():
+        if f.span() or f.lowest:
+            raise CertificateError(f"{f} is no integer", where=f"entry ({i + 1}, {j + 1}) of {name}")
+
+
+def _rows(matrix: LaurentMatrix) -> list[list[int]]:
+    rows = [[0] * matrix.shape[1] for _ in range(matrix.shape[0])]
+    for i, j, f in matrix.entries():
+        if matrix.over != "Z" or f.span() or f.lowest:
+            raise AlgebraError(
+                f"{f} is no integer", where=f"entry ({i + 1}, {j + 1})", accepted="a matrix of integers"
+            )
+        rows[i][j] = int(f.coefficients[0])
+    return rows
+
+
+def _matrix(rows: Sequence[Sequence[int]], width: int) -> LaurentMatrix:
+    terms = ((i, j, 0, c) for i, row in enumerate(rows) for j, c in enumerate(row) if c)
+    return LaurentMatrix.from_monomials(terms, (len(rows), width))
+
+
+def _check_side(matrix: LaurentMatrix) -> None:
+    if max(matrix.shape) > MAX_INTEGER_SIDE:
+        raise LimitError(
+            f"an integer matrix of shape {matrix.shape}",
+            accepted=f"at most {MAX_INTEGER_SIDE} rows and columns",
+        )
+
+
+def integer_factors(matrix: LaurentMatrix) -> tuple[int, ...]:
+    """The cokernel of an integer matrix: factors > 1, each dividing the next, then a 0 for each free Z.
+
+    Raises
+    ------
+    AlgebraError
+        If an entry is no integer.
+    LimitError
+        Beyond `MAX_INTEGER_SIDE`.
+
+    Examples
+    --------
+    >>> integer_factors(LaurentMatrix([[4, 6], [2, 8], [0, 0]]))
+    (2, 10, 0)
+    """
+    _check_side(matrix)
+    core = eliminate(matrix).core
+    return _cokernel(smith_diagonal(_rows(core)), core.shape[0])
+
+
+def _cokernel(diagonal: Sequence[int], generators: int) -> tuple[int, ...]:
+    return tuple(d for d in diagonal if d != 1) + (0,) * (generators - len(diagonal))
+
+
+def integer_smith_form(matrix: LaurentMatrix) -> IntegerSmithForm:
+    """The Smith normal form of an integer matrix with transforms; the same errors as `integer_factors`.
+
+    Hermite forms of rows and columns in turn, until the matrix is diagonal (R. Kannan, A. Bachem, Polynomial
+    algorithms for computing the Smith and Hermite normal forms of an integer matrix, SIAM J. Comput. 8
+    (1979)); where an entry does not divide the next one, its row is added to that one and the turns go on.
+
+    Examples
+    --------
+    >>> integer_smith_form(LaurentMatrix([[2, 0, 0], [0, 3, 0]])).diagonal
+    (1, 6)
+    """
+    _check_side(matrix)
+    height, width = matrix.shape
+    current = _rows(matrix)
+    U, V = LaurentMatrix.identity(height), LaurentMatrix.identity(width)
+    while height and width:
+        current, step = hermite_transform(current)
+        U = _matrix(step, height) @ U
+        current, V = _column_turn(current, V)
+        if any(c for i, row in enumerate(current) for j, c in enumerate(row) if i != j):
+            continue
+        place = _not_dividing([current[i][i] for i in range(min(height, width))])
+        if place is None:
+            break
+        # This row takes the next one in; the Hermite form of the columns then has the gcd of the two entries.
+        current[place][place + 1] = current[place + 1][place + 1]
+        added = LaurentMatrix.from_entries({(place, place + 1): 1}, (height, height))
+        U = (LaurentMatrix.identity(height) + added) @ U
+        current, V = _column_turn(current, V)
+    return IntegerSmithForm(
+        matrix,
+        _matrix(current, width),
+        U,
+        _matrix(integer_inverse(_rows(U)), height),
+        V,
+        _matrix(integer_inverse(_rows(V)), width),
+    )
+
+
+def _column_turn(rows: list[list[int]], V: LaurentMatrix) -> tuple[list[list[int]], LaurentMatrix]:
+    """The Hermite form of the columns, and V with their transform behind it."""
+    turned, step = hermite_transform(list(zip(*rows, strict=True)))
+    return [list(column) for column in zip(*turned, strict=True)], V @ _matrix(step, len(step)).transpose()
+
+
+def _not_dividing(diagonal: Sequence[int]) -> int | None:
+    """The first index whose entry does not divide the next; zeros come last."""
+    for i, (a, b) in enumerate(pairwise(diagonal)):
+        if a and b % a:
+            return i
+    return None
+
+
+def at_root_of_unity(matrix: LaurentMatrix, n: int, *, reduced: bool) -> LaurentMatrix:
+    """The integer matrix of a matrix over Z[t,1/t] on the powers 1, t, ... of Z[t,1/t]/(f).
+
+    f is t^n - 1, or nu_n = 1 + t + ... + t^(n-1) if `reduced`; every entry becomes the block of its
+    multiplication, a polynomial in the companion matrix of f.
+
+    Raises
+    ------
+    LimitError
+        Beyond `MAX_INTEGER_SIDE`.
+
+    Examples
+    --------
+    >>> print(at_root_of_unity(LaurentMatrix([["1 - t + t^2"]]), 3, reduced=True))
+    [[0,  2],
+     [-2, 2]]
+    """
+    size = n - 1 if reduced else n
+    height, width = size * matrix.shape[0], size * matrix.shape[1]
+    if max(height, width) > MAX_INTEGER_SIDE:
+        raise LimitError(
+            f"an integer matrix of shape {(height, width)}",
+            accepted=f"at most {MAX_INTEGER_SIDE} rows and columns: a smaller n",
+        )
+    return LaurentMatrix.from_monomials(_blocks(matrix, n, size), (height, width))
+
+
+def _blocks(matrix: LaurentMatrix, n: int, size: int) -> Iterator[tuple[int, int, int, int]]:
+    """The integers of `at_root_of_unity` as monomials: t^shift times an entry, exponents taken modulo n."""
+    for i, j, f in matrix.entries():
+        folded = [0] * n
+        for exponent, c in f.terms().items():
+            folded[exponent % n] += c
+        for shift in range(size):
+            image = folded[n - shift :] + folded[: n - shift]
+            # Modulo nu_n the power t^(n-1) is -(1 + t + ... + t^(n-2)).
+            last = image[-1] if size < n else 0
+            for k, c in enumerate(image[:size]):
+                if c != last:
+                    yield i * size + k, j * size + shift, 0, c - last
