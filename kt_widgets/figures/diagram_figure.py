@@ -98,7 +98,7 @@ def diagram(
     show = _Shown(labels and few, arrows, crossings and few, colour)
     if ax is not None:
         room = ax.get_window_extent()
-        points = 72 / ax.get_figure(root=True).dpi  # type: ignore[union-attr]
+        points = 72 / ax.figure.dpi
         across, up = room.width * points, room.height * points
         scene, _ = _scene(d, layout, look, show, across, up)
         draw(scene, ax, scale=min(across / scene.width, up / scene.height))

@@ -74,6 +74,14 @@ def place_labels(
     and height, from 0). A label is nearer to its own strand than to any other, or has a leader line.
 
     The labels with the fewest possible spots choose first; ties go to the earlier one.
+
+    Examples
+    --------
+    >>> strand = np.linspace(10 + 50j, 90 + 50j, 41)
+    >>> obstacles = Obstacles(strand, np.full(41, 0.5), np.full(41, 1))
+    >>> (spot,) = place_labels([Wish(8, 6, strand, 1)], obstacles, (100, 100), gap=2)
+    >>> abs(spot.centre.imag - 50) > 3.5
+    True
     """
     reach = [4 * max(wish.width, wish.height) + 20 * gap for wish in wishes]
     near = [obstacles.near(wish.path, far) for wish, far in zip(wishes, reach, strict=True)]

@@ -24,7 +24,16 @@ _STRAIGHT, _HALVINGS = 0.4, 8
 
 
 def magnified(curves: Curves) -> Curves:
-    """The curves with their smallest crossings magnified one after another, until none is very small."""
+    """The curves with their smallest crossings magnified one after another, until none is very small.
+
+    Examples
+    --------
+    >>> from kt_widgets.diagrams.planar_map import PlanarMap
+    >>> from kt_widgets.figures.quality import is_embedded
+    >>> from kt_widgets.figures.strands import curves_of_packing
+    >>> is_embedded(magnified(curves_of_packing(PlanarMap((1, 0, 3, 2)), 0)))
+    True
+    """
     crossings = len(curves.planar_map.mate) // 4
     for _ in range(_ROUNDS):
         sizes = [_least_edge(curves, crossing) for crossing in range(crossings)]

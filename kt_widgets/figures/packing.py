@@ -106,6 +106,12 @@ def pack(triangulation: Triangulation) -> Packing:
     ------
     KtError
         If Newton's method does not reach the tolerance; this has not been seen.
+
+    Examples
+    --------
+    >>> packing = pack(triangulate(PlanarMap((9, 4, 7, 10, 1, 8, 11, 2, 5, 0, 3, 6)), 0))
+    >>> len(packing.radii)
+    13
     """
     triangles = np.array(triangulation.triangles, dtype=np.intp)
     target = np.full(triangulation.nodes, 2 * np.pi)

@@ -55,7 +55,15 @@ def crossing_angle(curves: Curves) -> float:
 
 
 def is_embedded(curves: Curves) -> bool:
-    """Whether the drawn polygons meet at the crossings only, in the right order round each of them."""
+    """Whether the drawn polygons meet at the crossings only, in the right order round each of them.
+
+    Examples
+    --------
+    >>> from kt_widgets.diagrams.planar_map import PlanarMap
+    >>> from kt_widgets.figures.strands import curves_of_packing
+    >>> is_embedded(curves_of_packing(PlanarMap((1, 0, 3, 2)), 0))
+    True
+    """
     starts, ends, names_start, names_end = [], [], [], []
     mate = curves.planar_map.mate
     fresh = len(mate) // 4

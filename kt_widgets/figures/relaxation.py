@@ -160,6 +160,14 @@ def relaxed(curves: Curves) -> Curves:
     No step moves a point by more than a fixed part of the distance to the nearest strand, so the chains never
     cross each other; the smooth curves through them are to be checked by the caller. Whatever rotational
     symmetry the curves have, they keep.
+
+    Examples
+    --------
+    >>> from kt_widgets.figures.quality import is_embedded
+    >>> from kt_widgets.figures.strands import curves_of_packing
+    >>> trefoil = PlanarMap((9, 4, 7, 10, 1, 8, 11, 2, 5, 0, 3, 6))
+    >>> is_embedded(relaxed(curves_of_packing(trefoil, 0)))
+    True
     """
     net, points = _net(curves)
     form = _stiffness(net)

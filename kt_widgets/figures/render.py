@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from io import BytesIO
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Any, Literal
 from xml.sax.saxutils import escape, quoteattr
 
 from kt_widgets.errors import KtError
@@ -34,6 +34,20 @@ def number(value: float) -> str:
     """A coordinate with at most two decimals and no needless zeros."""
     text = f"{value:.2f}".rstrip("0").rstrip(".")
     return "0" if text == "-0" else text
+
+
+# What a user's own settings of matplotlib must not change. TrueType letters stay text in a PDF.
+_SETTINGS: dict[Any, Any] = {
+    "figure.facecolor": "white",
+    "savefig.facecolor": "auto",
+    "savefig.bbox": None,
+    "text.usetex": False,
+    "text.hinting": "force_autohint",
+    "pdf.fonttype": 42,
+    "pdf.compression": 6,
+    "path.simplify": False,
+    "lines.scale_dashes": True,
+}
 
 
 def to_svg(scene: Scene, prefix: str = "") -> str:
@@ -281,8 +295,8 @@ def _to_file(scene: Scene, kind: Literal["pdf", "png"], dpi: float, metadata: di
     from matplotlib.backends.backend_agg import FigureCanvasAgg
     from matplotlib.figure import Figure
 
-    # Figure() with its own canvas, never pyplot: no global state. TrueType letters stay text in a PDF.
-    with rc_context({"pdf.fonttype": 42, "path.simplify": False}):
+    # Figure() with its own canvas, never pyplot: no global state.
+    with rc_context(_SETTINGS):
         figure = Figure(figsize=(scene.width / 72, scene.height / 72))
         FigureCanvasAgg(figure)
         draw(scene, figure.add_axes((0, 0, 1, 1)))

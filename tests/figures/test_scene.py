@@ -136,6 +136,15 @@ def test_saved_files_and_bytes(tmp_path: Path) -> None:
         assert b"Date" not in one
 
 
+def test_settings_of_matplotlib_do_not_change_the_picture() -> None:
+    from matplotlib import rc_context
+
+    drawing = Drawing(SCENE)
+    plain = drawing.png(), drawing.pdf()
+    with rc_context({"figure.facecolor": "black", "savefig.bbox": "tight", "lines.scale_dashes": False}):
+        assert (drawing.png(), drawing.pdf()) == plain
+
+
 def test_a_notebook_gets_svg_png_and_text() -> None:
     data, metadata = Drawing(SCENE)._repr_mimebundle_()
     assert set(data) == {"text/plain", "image/svg+xml", "image/png"}
