@@ -11,7 +11,8 @@ import pytest
 
 import kt_widgets
 from kt_widgets import exchange
-from kt_widgets.algebra.ideals import Ideal, fitting_certificate
+from kt_widgets.algebra.fitting import fitting_certificate
+from kt_widgets.algebra.ideals import Ideal
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.algebra.smith import smith_form

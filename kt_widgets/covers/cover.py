@@ -9,7 +9,8 @@ from itertools import chain
 from math import gcd
 from typing import Any
 
-from kt_widgets.algebra.ideals import Ideal, fitting_ideal
+from kt_widgets.algebra.fitting import fitting_ideal
+from kt_widgets.algebra.ideals import Ideal
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.covers.chains import ChainComplex, sum_of_visits

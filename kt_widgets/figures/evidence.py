@@ -12,7 +12,7 @@ from typing import Any
 
 from kt_widgets import verify as verifier
 from kt_widgets.algebra.elimination import eliminate
-from kt_widgets.algebra.ideals import FittingCertificate, fitting_certificate
+from kt_widgets.algebra.fitting import FittingCertificate, fitting_certificate
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.algebra.smith import smith_form

@@ -14,16 +14,14 @@ import pytest
 from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
-from kt_widgets.algebra.flint_rings import hermite_rows, integer_kernel, integer_solution
-from kt_widgets.algebra.ideals import (
-    MAX_IDEAL_SPAN,
+from kt_widgets.algebra.fitting import (
     FittingCertificate,
-    Ideal,
-    IdealCertificate,
     fitting_certificate,
     fitting_divisor,
     fitting_ideal,
 )
+from kt_widgets.algebra.flint_rings import hermite_rows, integer_kernel, integer_solution
+from kt_widgets.algebra.ideals import MAX_IDEAL_SPAN, Ideal, IdealCertificate
 from kt_widgets.algebra.laurent import LaurentPolynomial, gcd_of
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.errors import AlgebraError, CertificateError, KtError, LimitError, ParseError
