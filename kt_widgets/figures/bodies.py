@@ -16,10 +16,9 @@ from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.covers.chains import ChainComplex
 from kt_widgets.covers.cover import Cover
 from kt_widgets.figures.drawing import Drawing
-from kt_widgets.figures.steps import chain_text
 from kt_widgets.groups.presentations import Presentation
 from kt_widgets.places import Place
-from kt_widgets.text.printing import matrix_too_large, name_text, word_text
+from kt_widgets.text.printing import chain_text, matrix_too_large, name_text, word_text
 
 __all__ = [
     "MAX_CELLS",
@@ -285,7 +284,7 @@ def _summands(c: ChainComplex) -> list[Fact]:
     for i, s in enumerate(summands, 1):
         parts = [(name, f.terms()) for name, f in zip(s.names, s.cycle, strict=True)]
         name = f"generator {i}" if len(summands) > 1 else "generator"
-        text, latex = chain_text(parts), f"z_{{{i}}} = {chain_text(parts, 'latex')}"
+        text, latex = chain_text(parts, "unicode"), f"z_{{{i}}} = {chain_text(parts, 'latex')}"
         if len(text) > MAX_TEXT:
             text, latex = "", ""
         note = "" if text else "a long cycle, in Python: .over(ring).summands()"

@@ -5,8 +5,12 @@ from __future__ import annotations
 import math
 from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from functools import cached_property
 from itertools import pairwise
+
+import numpy as np
+from numpy.typing import NDArray
 
 from kt_widgets.covers.cover import Cover
 from kt_widgets.errors import KtError
@@ -18,15 +22,21 @@ from kt_widgets.figures.scene import Arrow, Dot, Item, Label, Point, Region, Sce
 from kt_widgets.figures.tables import typeset
 from kt_widgets.groups.fox import Visit
 from kt_widgets.places import Place
-from kt_widgets.text.printing import name_text, word_text
+from kt_widgets.text.printing import lift_text, name_text, word_text
 
-__all__ = ["MAX_EDGES", "MAX_WINDOW", "cover", "cover_scene", "lift_text"]
+__all__ = ["MAX_EDGES", "MAX_WINDOW", "cover", "cover_scene"]
 
 MAX_EDGES = 16
 """With more generators only those that the traced boundaries pass are drawn."""
 
 MAX_WINDOW = 60
 """The longest window drawn: more vertices than this leave no room for the edges between them."""
+
+# Parts of a length, the ones that look best first.
+_NAMES = tuple(0.5 + sign * 0.02 * i for i in range(14) for sign in (1, -1))
+_HEADS = tuple(0.7 + sign * 0.02 * i for i in range(12) for sign in (1, -1))
+_NUMBERS = tuple(0.26 + sign * 0.02 * i for i in range(8) for sign in (1, -1))
+_TALLEST = 1.5
 
 # The angle between a fan's outermost arc and the line; at 90 degrees it would touch the next fan.
 _STEEPEST = math.radians(84)
@@ -36,24 +46,12 @@ _LONGEST = 12  # letters of a relator in the title
 Path = tuple[Point, ...]
 
 
-def lift_text(power: int, what: str) -> str:
-    """The lift t^power `what` as the text of a label.
-
-    Examples
-    --------
-    >>> lift_text(-1, "e"), lift_text(0, "e"), lift_text(1, "a")
-    ('$t^{-1} e$', '$e$', '$t a$')
-    """
-    shift = {0: "", 1: "t "}.get(power, f"t^{{{power}}} ")
-    return f"${shift}{what}$"
-
-
 @dataclass(frozen=True)
 class _Edge:
     """How the lifts of one generator are drawn: `path` is the lift that starts at t^0 e, with e at (0, 0).
 
     `slot` counts a fan's arcs from above (None for arches and loops), `angle` is the angle between an arc and
-    the next one.
+    the next one. The name and the arrow head stand after these parts of the length.
     """
 
     generator: str
@@ -61,6 +59,8 @@ class _Edge:
     path: Path
     slot: int | None = None
     angle: float = 0.0
+    name_at: float = 0.5
+    head_at: float = 0.7
 
 
 @dataclass(frozen=True)
@@ -85,6 +85,15 @@ class _Strip:
     def path(self, generator: str, k: int) -> Path:
         x, y = self.vertex(k)
         return tuple((x + u, y + v) for u, v in self.edges[generator].path)
+
+    @cached_property
+    def ink(self) -> NDArray[np.float64]:
+        """Points along all edges shown, and round their names."""
+        powers = range(self.lo, self.hi + 1)
+        lifts = [(g, self.path(g, k)) for g in self.edges for k in powers if self.shows(g, k)]
+        lines = [_fine(path, 0.4 * self.preset.label) for _, path in lifts]
+        names = [_box(_at(path, self.edges[g].name_at)[0], self.preset) for g, path in lifts]
+        return np.vstack([np.empty((0, 2)), *lines, *names])
 
     def shows(self, generator: str, k: int) -> bool:
         return self.lo <= min(k, k + self.edges[generator].weight) and (
@@ -152,6 +161,34 @@ def _at(path: Path, part: float) -> tuple[Point, Point]:
     return (x0 + u * (x1 - x0), y0 + u * (y1 - y0)), ((x1 - x0) / step, (y1 - y0) / step)
 
 
+def _spots(path: Path, parts: NDArray[np.float64]) -> NDArray[np.float64]:
+    """The points after these parts of a path's length."""
+    points = np.array(path)
+    lengths = np.concatenate(([0.0], np.hypot(*np.diff(points, axis=0).T).cumsum()))
+    return np.column_stack([np.interp(parts * lengths[-1], lengths, line) for line in points.T])
+
+
+def _fine(path: Path, step: float) -> NDArray[np.float64]:
+    """Points along a path, about `step` apart."""
+    return _spots(path, np.linspace(0, 1, math.ceil(_lengths(path)[-1] / step) + 1))
+
+
+def _clearest(path: Path, parts: Sequence[float], taken: NDArray[np.float64], enough: float) -> float:
+    """The first part of a path's length that is `enough` away from the points taken, else the clearest."""
+    spots = _spots(path, np.array(parts))
+    low, high = spots.min(axis=0) - enough, spots.max(axis=0) + enough
+    taken = taken[((low < taken) & (taken < high)).all(axis=1)]
+    away = ((spots[:, None, :] - taken[None, :, :]) ** 2).sum(axis=2).min(axis=1, initial=enough**2)
+    # Rounded, so that equals stay equal on every machine.
+    return parts[int(np.argmax(np.round(away, 3)))]
+
+
+def _box(spot: Point, preset: Preset) -> NDArray[np.float64]:
+    """The corners of a letter's box."""
+    corners = [(u, v) for u in (-0.45, 0.45) for v in (-0.3, 0.3)]
+    return np.array(spot) + preset.label * np.array(corners)
+
+
 def _cut(path: Path, start: float, end: float) -> Path:
     """The part of a path between two parts of its length."""
     lengths = _lengths(path)
@@ -170,34 +207,74 @@ def _broken(path: Path, part: float, gap: float) -> tuple[Path, ...]:
 # Where the edges run ------------------------------------------------------------------------------------
 
 
-def _edges(weights: Mapping[str, int], spacing: float, preset: Preset) -> dict[str, _Edge]:
-    """Weight one: a fan of arcs, the first generator uppermost. Larger: arches outside it. Zero: loops."""
+def _edges(
+    weights: Mapping[str, int], spacing: float, preset: Preset, crowd: Mapping[str, int]
+) -> dict[str, _Edge]:
+    """Weight one: a fan of arcs, the first generator uppermost. Larger: arches outside it. Zero: loops.
+
+    Edges that traces pass several times (`crowd`) get more room.
+    """
     fan = [g for g, w in weights.items() if abs(w) == 1]
     wide = sorted((g for g, w in weights.items() if abs(w) > 1), key=lambda g: abs(weights[g]))
     loops = [g for g, w in weights.items() if w == 0]
     found: dict[str, _Edge] = {}
 
-    steepest = min(_STEEPEST, math.radians(20 + 18 * (len(fan) - 1))) if len(fan) > 1 else 0.0
+    lanes = sum(crowd.get(g, 0) for g in fan)
+    opened = math.radians(20 + 18 * (len(fan) - 1) + 10 * max(lanes - len(fan), 0))
+    steepest = min(_STEEPEST, opened) if len(fan) > 1 else 0.0
     between = 2 * steepest / (len(fan) - 1) if len(fan) > 1 else math.radians(60)
+    # A fan of many arcs is taller than half circles, for the letters between them.
+    tall = min(max(1.5 * preset.label * len(fan) / spacing, 1.0), _TALLEST)
+    name, turn, head = (0.5, 0.06, 0.74) if spacing > 5 * preset.label else (0.37, 0.0, 0.85)
     for i, g in enumerate(fan):
-        arc = _arc(spacing, steepest - i * between)
+        arc = tuple((x, tall * y) for x, y in _arc(spacing, steepest - i * between))
         if weights[g] < 0:
             arc = tuple((x - spacing, y) for x, y in reversed(arc))
-        found[g] = _Edge(g, weights[g], arc, i, between)
+        # Names of close arcs take turns.
+        found[g] = _Edge(
+            g, weights[g], arc, i, between * tall, name + turn * (i % 3 - 1) * (len(fan) > 4), head
+        )
 
-    level = spacing / 2 * math.tan(steepest / 2)
+    sides = {1: tall * spacing / 2 * math.tan(steepest / 2), -1: tall * spacing / 2 * math.tan(steepest / 2)}
+    tops = dict.fromkeys(sides, 0.0)
+    for i, g in enumerate(loops):
+        side = 1 if i % 2 == 0 else -1
+        room = 4.2 + 1.3 * max(crowd.get(g, 0) - 1, 0)
+        height = max(tops[side] * 1.45, min(0.5 * spacing, room * preset.label))
+        tops[side] = height
+        found[g] = _Edge(g, 0, _teardrop(side * height, 0.8))
+
     step = 2.6 * preset.label
-    sides = {1: level, -1: level}
+    for side, top in tops.items():
+        sides[side] = max(sides[side], top + 0.8 * step if top else 0.0)
     for i, g in enumerate(wide):
         side = 1 if i % 2 == 0 else -1
         sides[side] += step * (1.0 if sides[side] else 1.6)
-        found[g] = _Edge(g, weights[g], _arch(weights[g] * spacing, side * sides[side]))
+        # Lifts of a flat arch would cross each other at small angles.
+        height = sides[side] + 0.1 * abs(weights[g]) * spacing
+        found[g] = _Edge(g, weights[g], _arch(weights[g] * spacing, side * height))
+    return _marked({g: found[g] for g in weights}, spacing, preset)
 
-    for i, g in enumerate(loops):
-        side, rank = (1 if i % 2 == 0 else -1), i // 2
-        height = min(0.5 * spacing, 4.2 * preset.label) * (1 + 0.45 * rank)
-        found[g] = _Edge(g, 0, _teardrop(side * height, 0.8))
-    return {g: found[g] for g in weights}
+
+def _marked(edges: Mapping[str, _Edge], spacing: float, preset: Preset) -> dict[str, _Edge]:
+    """Put the names and arrow heads of arches where they are clear of all other lifts."""
+    found = dict(edges)
+    reach = max((abs(e.weight) for e in edges.values()), default=0)
+    for g, edge in edges.items():
+        if abs(edge.weight) < 2:
+            continue
+        lifts = [
+            tuple((x + k * spacing, y) for x, y in other.path)
+            for h, other in edges.items()
+            for k in range(-reach, reach + 1)
+            if (h, k) != (g, 0)
+        ]
+        taken = np.vstack([_fine(lift, 0.4 * preset.label) for lift in lifts])
+        middle = _clearest(edge.path, _NAMES, taken, 1.1 * preset.label)
+        name = _box(_at(edge.path, middle)[0], preset)
+        head = _clearest(edge.path, _HEADS, np.vstack([taken, name]), 0.9 * preset.label)
+        found[g] = replace(edge, name_at=middle, head_at=head)
+    return found
 
 
 # The trace of a boundary --------------------------------------------------------------------------------
@@ -241,7 +318,7 @@ def _lane(strip: _Strip, visit: Visit, rank: int, share: float) -> Path:
     path = strip.path(visit.generator, visit.exponent)
     if visit.sign < 0:
         path = path[::-1]
-    wanted = 0.52 * strip.preset.label * (rank + 1)
+    wanted = strip.preset.label * (0.75 + 0.8 * rank)
     points: list[Point] = []
     for i, (x, y) in enumerate(path):
         (x0, y0), (x1, y1) = path[max(i - 1, 0)], path[min(i + 1, len(path) - 1)]
@@ -278,11 +355,14 @@ def _trace(strip: _Strip, visits: Sequence[Visit]) -> list[Item]:
     ]
     outline = [point for lane, turn in zip(lanes, turns, strict=True) for point in (*lane, *turn[1:-1])]
     items: list[Item] = [Region(str(visits[0].cell), tuple(outline), "cell", z=-1)]
+    taken = [strip.ink, *(_fine(lane, 0.4 * preset.label) for lane in lanes)]
     for i, (visit, lane) in enumerate(zip(visits, lanes, strict=True)):
         name = str(visit.letter)
         text = str(visit.position)
         size = extent(text, label_size("number", preset))
-        first, *rest = _broken(lane, 0.26, size.width + 0.5 * preset.label)
+        others = np.vstack([points for j, points in enumerate(taken) if j != i + 1])
+        number = _clearest(lane, _NUMBERS, others, 0.5 * preset.label)
+        first, *rest = _broken(lane, number, size.width + 0.5 * preset.label)
         # A letter brings the turn towards it; the last one also brings the turn back to the start.
         pieces = [(*turns[i - 1], *first[1:]) if i else first, *rest]
         if i == len(lanes) - 1:
@@ -291,7 +371,9 @@ def _trace(strip: _Strip, visits: Sequence[Visit]) -> list[Item]:
         tip, direction = _at(lane, 0.8)
         items.append(Arrow(name, tip, direction, "trace", z=3))
         if rest:
-            items.append(Label(name, text, _at(lane, 0.26)[0], "number", z=4))
+            spot = _at(lane, number)[0]
+            items.append(Label(name, text, spot, "number", z=4))
+            taken.append(_box(spot, preset))
     return items
 
 
@@ -365,7 +447,14 @@ def cover_scene(
     margin = 3.2 * look.label
     fan = sum(abs(w) == 1 for w in weights.values())
     spacing = min((look.width - 2 * margin) / (high - low), look.label * max(11.0, 1.35 * fan))
-    strip = _Strip(spacing, low, high, (margin, 0.0), _edges(weights, spacing, look), look)
+    # A long strip is wider than the column rather than illegible.
+    spacing = max(spacing, 3.4 * look.label)
+    crowds = [Counter((v.generator, v.exponent) for v in trace) for trace in traces.values()]
+    crowd: dict[str, int] = {}
+    for found in crowds:
+        for (g, _), times in found.items():
+            crowd[g] = max(crowd.get(g, 0), times)
+    strip = _Strip(spacing, low, high, (margin, 0.0), _edges(weights, spacing, look, crowd), look)
     items: list[Item] = []
     for i, (g, edge) in enumerate(strip.edges.items()):
         # Black, the last of the palette, is for the trace.
@@ -401,16 +490,14 @@ def _edge_items(strip: _Strip, edge: _Edge, k: int, tint: int) -> list[Item]:
         strip.path(edge.generator, k),
         _maths(edge.generator),
     )
-    # The middle of an arch of even weight lies over a vertex, where loops stand; close arcs take turns.
-    middle = 0.4 if abs(edge.weight) > 1 else 0.5 if edge.slot is None else 0.47 + 0.06 * (edge.slot % 2)
     pieces: tuple[Path, ...] = (path,)
     items: list[Item] = []
     if not edge.angle or edge.angle * strip.spacing / 4 > 0.6 * preset.label:
         size = extent(text, label_size("label", preset))
-        pieces = _broken(path, middle, size.width + 0.5 * preset.label)
+        pieces = _broken(path, edge.name_at, size.width + 0.5 * preset.label)
         if len(pieces) == 2:
-            items.append(Label(name, text, _at(path, middle)[0], "label", z=2, colour_index=tint))
-    tip, direction = _at(path, 0.7)
+            items.append(Label(name, text, _at(path, edge.name_at)[0], "label", z=2, colour_index=tint))
+    tip, direction = _at(path, edge.head_at)
     return [
         *(Stroke(name, piece, "edge", z=1, colour_index=tint) for piece in pieces),
         Arrow(name, tip, direction, "edge", z=1, colour_index=tint),
@@ -433,7 +520,7 @@ def _rail_items(strip: _Strip, rail: float) -> list[Item]:
             Stroke(name, ((x, y), (x, rail)), "dropline"),
             Stroke(name, ((x, rail), (x, rail - 0.35 * size)), "rail"),
             Dot(name, (x, y), "vertex", z=5),
-            Label(name, lift_text(k, "e"), (x, rail - 1.1 * size)),
+            Label(name, f"${lift_text(k, 'e', 'latex')}$", (x, rail - 1.1 * size)),
         ]
     for end, side in ((left, -1), (right, 1)):
         items += [Dot("more", (end + side * (1.2 + 0.55 * i) * size, y), "more") for i in range(3)]
@@ -467,7 +554,7 @@ def cover(
     >>> from kt_widgets.groups.presentations import Presentation
     >>> drawing = cover(Cover(Presentation.parse("< a, b | a b a = b a b >")))
     >>> drawing
-    Drawing('infinite cyclic cover', 241 x 73.26 pt)
+    Drawing('infinite cyclic cover', 241 x 76.74 pt)
     >>> [item.role for item in drawing.scene.at("vertex:3")]
     ['dropline', 'rail', 'vertex', 'label']
     """

@@ -4,14 +4,13 @@ from __future__ import annotations
 
 from kt_widgets.covers.chains import ChainComplex
 from kt_widgets.errors import AlgebraError
-from kt_widgets.figures.cover_figure import lift_text
 from kt_widgets.figures.drawing import Drawing
 from kt_widgets.figures.lettering import extent
 from kt_widgets.figures.presets import Preset, label_size, preset_named
 from kt_widgets.figures.scene import Arrow, Dot, Item, Label, Point, Scene, Stroke
 from kt_widgets.groups.fox import Visit
 from kt_widgets.places import Place
-from kt_widgets.text.printing import name_text, polynomial_text, word_text
+from kt_widgets.text.printing import lift_text, name_text, polynomial_text, word_text
 
 __all__ = ["explain", "explain_scene"]
 
@@ -100,7 +99,9 @@ class _Explanation:
             items += [
                 Stroke(name, ((x, y), (end, y)), "dropline"),
                 Dot(name, (x, y), "vertex", z=3),
-                Label(name, lift_text(k, "e"), (end + 0.4 * self.preset.label, y), anchor="left"),
+                Label(
+                    name, f"${lift_text(k, 'e', 'latex')}$", (end + 0.4 * self.preset.label, y), anchor="left"
+                ),
             ]
         return items
 
@@ -129,7 +130,7 @@ class _Explanation:
                 Arrow(name, after, direction, "strand", z=1, colour_index=tint),
                 Label(
                     name,
-                    lift_text(k, name_text(self.generator, "latex")),
+                    f"${lift_text(k, name_text(self.generator, 'latex'), 'latex')}$",
                     (middle[0] - 0.6 * size, middle[1]),
                     anchor="right",
                     colour_index=tint,

@@ -2,18 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
-from fractions import Fraction
 from typing import TypedDict
 
 from kt_widgets.covers.cover import Cover
 from kt_widgets.figures.links import check_size
 from kt_widgets.places import Place
-from kt_widgets.text.printing import Style, name_text, polynomial_text, word_text
+from kt_widgets.text.printing import chain_text, name_text, polynomial_text, word_text
 
-__all__ = ["Step", "chain_text", "lift_name", "steps"]
-
-Terms = Mapping[int, int | Fraction]
+__all__ = ["Step", "steps"]
 
 
 class Step(TypedDict):
@@ -26,44 +22,6 @@ class Step(TypedDict):
     caption: str
     sum: dict[str, str]
     sum_text: str
-
-
-def lift_name(power: int, what: str, style: Style = "unicode") -> str:
-    """The lift t^power `what` as text.
-
-    Examples
-    --------
-    >>> lift_name(-1, "e"), lift_name(0, "e"), lift_name(1, "e")
-    ('t⁻¹ e', 'e', 't e')
-    """
-    return f"{polynomial_text({power: 1}, style)} {what}" if power else what
-
-
-def chain_text(coefficients: Iterable[tuple[str, Terms]], style: Style = "unicode") -> str:
-    """A chain as a sum of polynomials times names.
-
-    Examples
-    --------
-    >>> chain_text([("a", {0: 1, 1: -1}), ("b", {1: -1}), ("c", {}), ("d", {0: 1})], "plain")
-    '(1 - t) a - t b + d'
-    >>> chain_text([])
-    '0'
-    """
-    pieces: list[str] = []
-    for name, given in coefficients:
-        terms = {exponent: c for exponent, c in given.items() if c}
-        if not terms:
-            continue
-        negative = len(terms) == 1 and min(terms.values()) < 0
-        if len(terms) > 1:
-            factor = f"({polynomial_text(terms, style)}) "
-        else:
-            text = polynomial_text({e: -c if negative else c for e, c in terms.items()}, style)
-            factor = "" if text == "1" else f"{text} "
-        minus = "−" if style == "unicode" else "-"
-        sign = (f" {minus} " if negative else " + ") if pieces else (minus if negative else "")
-        pieces.append(sign + factor + name_text(name, style))
-    return "".join(pieces) or "0"
 
 
 def steps(cover: Cover) -> list[Step]:
@@ -111,9 +69,6 @@ def steps(cover: Cover) -> list[Step]:
         for v in visits:
             terms = sums.setdefault(v.generator, {})
             terms[v.exponent] = terms.get(v.exponent, 0) + v.sign
-            added = ("+" if v.sign > 0 else "−") + polynomial_text({v.exponent: 1}, "unicode")
-            letter, name = word_text([(v.generator, v.sign)], "unicode"), name_text(v.generator, "unicode")
-            way = f"from {lift_name(v.start, 'e')} to {lift_name(v.end, 'e')}"
             ordered = [(g, sums[g]) for g in presentation.generators if g in sums]
             start = f"{cell} =" if v.position == len(visits) else "so far:"
             found.append(
@@ -122,9 +77,9 @@ def steps(cover: Cover) -> list[Step]:
                     letter=str(v.letter),
                     edge=str(v.edge),
                     entry=str(Place("entry", (2, rows[v.generator], r))),
-                    caption=f"{letter} {way}: {added} in the entry of {name}",
+                    caption=v.text("unicode"),
                     sum={g: polynomial_text(terms) for g, terms in ordered},
-                    sum_text=f"{start} {chain_text(ordered)}",
+                    sum_text=f"{start} {chain_text(ordered, 'unicode')}",
                 )
             )
     return found

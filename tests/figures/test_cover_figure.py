@@ -14,7 +14,7 @@ from kt_widgets.diagrams.diagram import Diagram
 from kt_widgets.errors import KtError
 from kt_widgets.figures.cover_figure import MAX_EDGES, cover, cover_scene
 from kt_widgets.figures.presets import PRESETS, label_box, preset_named
-from kt_widgets.figures.scene import Label, Region, Scene, Stroke
+from kt_widgets.figures.scene import Arrow, Label, Region, Scene, Stroke
 from kt_widgets.groups.presentations import Presentation
 
 TREFOIL = "< a, b | a b a = b a b >"
@@ -119,6 +119,52 @@ def test_twelve_generators_are_readable(preset: str) -> None:
         middles[g] = [p for p in points if left + (right - left) / 3 < p[0] < right - (right - left) / 3]
     for g, h in pairwise(middles):
         assert distance(middles[g], middles[h]) > 0.8 * look.line * 2
+
+
+def others(found: Scene, edge: str) -> list[tuple[float, float]]:
+    """Points along the lines of all other edges, close together."""
+    strokes = [s for s in found.items if isinstance(s, Stroke) and s.id.startswith("edge:") and s.id != edge]
+    pairs = [pair for s in strokes for pair in pairwise(s.points)]
+    return [(x + (u - x) * i / 8, y + (v - y) * i / 8) for (x, y), (u, v) in pairs for i in range(9)]
+
+
+@pytest.mark.parametrize("preset", PRESETS)
+@pytest.mark.parametrize("text", ["x^3 = y^2", "x^2 = y^5", "x^3 = y^4"])
+def test_names_and_heads_of_arches_stand_clear_of_other_arches(text: str, preset: str) -> None:
+    # Lifts of one arch cross each other: their names and heads must not stand at these crossings.
+    found = cover_scene(Cover(Presentation.parse(f"< x, y | {text} >")), [1], preset=preset)
+    size = preset_named(preset).label
+    for item in found.items:
+        if item.id.startswith("edge:") and isinstance(item, Label | Arrow):
+            spot = item.position if isinstance(item, Label) else item.tip
+            room = 0.55 if isinstance(item, Label) else 0.4
+            assert distance([spot], others(found, item.id)) > room * size, item
+
+
+def test_arches_pass_over_loops() -> None:
+    x = Cover(Presentation.parse("< a, b, c | [a, b] [a, c] >"), {"a": 1, "b": 0, "c": 2})
+    found = cover_scene(x, [1])
+    loop = [p for s in found.at("edge:b:1") if isinstance(s, Stroke) for p in s.points]
+    arch = [p for s in found.at("edge:c:0") if isinstance(s, Stroke) for p in s.points]
+    assert distance(loop, arch) > preset_named("screen").label
+
+
+@pytest.mark.parametrize("preset", PRESETS)
+def test_many_lanes_have_numbers_that_can_be_told_apart(preset: str) -> None:
+    x = Cover(Presentation.parse("< a, b | a b^-1 a^-1 b a b^-1 a b a^-1 b^-1 >"))
+    found = cover_scene(x, [1], preset=preset)
+    look = preset_named(preset)
+    spots = [item.position for item in found.items if isinstance(item, Label) and item.role == "number"]
+    assert len(spots) == 10
+    for i, spot in enumerate(spots):
+        assert all(math.dist(spot, other) > 0.5 * look.label for other in spots[:i])
+
+
+def test_a_long_strip_is_wider_than_the_column_but_legible() -> None:
+    found = cover(Cover(Presentation.parse("< x, y | x^3 = y^2 >")), lo=0, hi=30).scene
+    (x0, _), (x1, _) = (found.at(f"vertex:{k}")[2].position for k in (0, 1))  # type: ignore[union-attr]
+    assert x1 - x0 > 3 * preset_named("paper").label
+    assert found.width > preset_named("paper").width
 
 
 def test_two_traversals_of_one_edge_keep_apart() -> None:
