@@ -279,8 +279,11 @@ class Item:
     def number(self, ring: Ring) -> Number:
         if type(self.value) is int and (ring in ("Z", "Q") or 0 <= self.value < int(ring)):
             return self.value
-        if ring == "Q" and type(self.value) is str and re.fullmatch(r"-?[1-9]\d*/[1-9]\d*", self.value):
-            fraction = Fraction(self.value)
+        if ring == "Q" and type(self.value) is str and re.fullmatch(r"-?[1-9][0-9]*/[1-9][0-9]*", self.value):
+            try:
+                fraction = Fraction(self.value)
+            except ValueError as error:  # more digits than Python reads
+                raise self.refuse(str(error)) from None
             if str(fraction) == self.value and fraction.denominator > 1:
                 return fraction
         raise self.refuse(f"not a coefficient over {ring} in its one form")
@@ -312,8 +315,8 @@ class Item:
             last = spot
         return matrix
 
-    def word(self) -> Word:
-        pairs = [item.items(2) for item in self.items()]
+    def word(self, length: int | None = None) -> Word:
+        pairs = [item.items(2) for item in self.items(length)]
         return tuple((name.text(), sign.sign()) for name, sign in pairs)
 
 
@@ -362,6 +365,42 @@ class Diagram:
     def gauss(self) -> list[list[int]]:
         ends = self.passes()
         return [[ends[edge] for edge in run] for run in self.components()]
+
+    def mates(self) -> dict[int, int]:
+        """The other end of the edge at each end; end 4c + s is slot s of crossing c + 1, both from 0."""
+        ends: dict[int, list[int]] = {edge: [] for edge in self.following()}
+        for number, row in enumerate(self.crossings):
+            for slot, edge in enumerate(row):
+                ends[edge].append(4 * number + slot)
+        return {one: other for one, two in ends.values() for one, other in ((one, two), (two, one))}
+
+    def faces(self) -> dict[int, int]:
+        """The number of the face on the left of each end, seen from its crossing."""
+        mate, face_of, count = self.mates(), {}, 0
+        for dart in mate:
+            count += dart not in face_of
+            while dart not in face_of:
+                face_of[dart] = count
+                # Arriving at a crossing, the walk round a face leaves by the slot clockwise of its own.
+                dart = mate[dart] - mate[dart] % 4 + (mate[dart] - 1) % 4
+        return face_of
+
+    def summands(self) -> list[int]:
+        """The lowest crossing of the summand of each crossing: cut through edges between the same faces."""
+        ends, face_of, mate = self.passes(), self.faces(), self.mates()
+        parallel: dict[frozenset[int], list[int]] = {}
+        after = self.following()
+        starts = {after[edge]: abs(ends[edge]) for edge in after}
+        for dart, other in sorted(mate.items()):
+            if dart < other:
+                edge = self.crossings[dart // 4][dart % 4]
+                parallel.setdefault(frozenset((face_of[dart], face_of[other])), []).append(edge)
+        first = list(range(len(self.crossings) + 1))
+        for edges in map(sorted, parallel.values()):
+            for before, then in zip(edges, [*edges[1:], edges[0]], strict=True):
+                low, high = sorted((first[abs(ends[before])], first[starts[then]]))
+                first = [low if number == high else number for number in first]
+        return first[1:]
 
     def arc_of(self) -> dict[int, int]:
         return {edge: number for number, arc in enumerate(self.arcs, 1) for edge in arc}
@@ -499,7 +538,7 @@ def _read(data: Any) -> Dossier:
         subject.fields("line")[0].text(),
         diagram,
         generators.texts(g),
-        [item.word() for item in relators.items(r)],
+        [item.word(4) for item in relators.items(r)],
         generator_places.texts(g),
         relator_places.texts(r),
         [(meridian.word(), longitude.word()) for meridian, longitude in pairs],
@@ -631,25 +670,20 @@ def _subject(d: Dossier) -> str:
         raise line.refuse(f"the signs {signs}, where the diagram has {diagram.signs}")
     if circles != diagram.circles:
         raise line.refuse(f"{circles} components without crossings, where the diagram has {diagram.circles}")
-    scope = ", up to the mirror images of its summands" if notation == "dowker" else ""
-    return f"{d.line!r} is this diagram{scope}"
+    if notation != "dowker":
+        return f"{d.line!r} is this diagram"
+    for number, first in enumerate(diagram.summands(), 1):
+        if abs(diagram.passes()[2 * number - 1]) != number:
+            raise line.refuse(f"crossing {number} is not met at pass {2 * number - 1}")
+        if diagram.signs[first - 1] < 0:
+            raise line.refuse(f"the code leaves mirror images open, but crossing {first} is to be positive")
+    return f"{d.line!r} is this diagram, with the first crossing of each summand positive"
 
 
 def _planar(d: Dossier) -> str:
     diagram, count = d.diagram, len(d.diagram.crossings)
     after, passes, components = diagram.following(), diagram.passes(), diagram.components()
-    ends: dict[int, list[int]] = {edge: [] for edge in after}
-    for number, row in enumerate(diagram.crossings):
-        for slot, edge in enumerate(row):
-            ends[edge].append(4 * number + slot)
-    mate = {one: other for one, two in ends.values() for one, other in ((one, two), (two, one))}
-    faces, seen = 0, set()
-    for dart in mate:
-        faces += dart not in seen
-        while dart not in seen:
-            seen.add(dart)
-            # Arriving at a crossing, the walk round a face leaves by the slot clockwise of its own.
-            dart = mate[dart] - mate[dart] % 4 + (mate[dart] - 1) % 4
+    mate, faces = diagram.mates(), len(set(diagram.faces().values()))
     pieces, reached = 0, set()
     for first in range(count):
         pieces += first not in reached
@@ -1005,7 +1039,9 @@ def main(arguments: Sequence[str] | None = None) -> int:
         return 2
     outcomes = []
     for name, sentence, holds in results(data):
-        print(f"{'holds' if holds else 'FAILS'}  {name}: {sentence}")
+        # A text from the file need not fit the encoding of this terminal.
+        said = sentence.encode("ascii", "backslashreplace").decode("ascii")
+        print(f"{'holds' if holds else 'FAILS'}  {name}: {said}")
         outcomes.append(holds)
     failed = outcomes.count(False)
     print(f"{failed} of {len(outcomes)} checks fail" if failed else f"all {len(outcomes)} checks hold")

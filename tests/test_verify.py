@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import copy
 import hashlib
+import io
 import json
 import random
 import subprocess
@@ -316,6 +317,40 @@ def test_missing_files_and_arguments_give_exit_code_2(tmp_path):
     assert run(VERIFY, tmp_path / "nothing.json").returncode == 2
     assert run(VERIFY).returncode == 2
     assert run(VERIFY, "--help").returncode == 2
+
+
+def test_what_python_does_not_read_or_a_terminal_print_is_refused(tmp_path, monkeypatch, trefoil):
+    long, typed = copy.deepcopy(trefoil), copy.deepcopy(trefoil)
+    long["data"]["fields"][0]["U"]["entries"][0][2]["coefficients"][0] = "1" * 5000 + "/2"
+    assert verifier.verify(signed(long))[0].startswith("fields[1].U[1,1].coefficients[1]: ")
+    typed["data"]["subject"]["line"] = "braid 1 1 é"
+    file = tmp_path / "dossier.json"
+    file.write_text(json.dumps(signed(typed)))
+    printed = io.BytesIO()
+    monkeypatch.setattr(sys, "stdout", io.TextIOWrapper(printed, encoding="ascii", write_through=True))
+    assert verifier.main([str(file)]) == 1
+    assert rb"FAILS  subject: subject.line: '1 1 \xe9' is no list of numbers" in printed.getvalue()
+
+
+def test_long_relators_are_refused_at_once(trefoil):
+    changed = copy.deepcopy(trefoil)
+    changed["data"]["presentation"]["relators"][0] = [["a", 1]] * 100_000
+    assert verifier.verify(signed(changed)) == [
+        "presentation.relators[1]: 100000 items, where 4 are expected"
+    ]
+
+
+@pytest.mark.parametrize("code", [[4, 6, 2], [4, 6, 2, 10, 12, 8], [4, 8, 12, 10, 2, 6]])
+def test_a_dowker_code_stands_for_the_image_with_positive_first_crossings(code):
+    # The code does not tell the reflected diagram apart, what it is read as does.
+    d = Diagram.from_dowker(code)
+    line = {"line": d.source}
+    assert verifier.verify(document(d.source)) == []
+    reflected = Diagram([(a, d, c, b) for a, b, c, d in d.slots], [-sign for sign in d.signs])
+    changed = document(str(reflected))
+    changed["data"]["subject"] = line
+    (said,) = verifier.verify(signed(changed))
+    assert said.startswith("subject.line: the code leaves mirror images open, but crossing 1 is to be")
 
 
 @pytest.mark.parametrize("value", [0, "text", [], {}, None, [[]], {"data": []}])
