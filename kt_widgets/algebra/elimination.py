@@ -5,13 +5,13 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from kt_widgets.algebra.flint_rings import RingName
+from kt_widgets.algebra.flint_rings import RingName, ring
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
-from kt_widgets.algebra.sparse import Pivot, Row, eliminate_units, subtract_line
+from kt_widgets.algebra.sparse import Pivot, Row, eliminate_units, kernel_vector, subtract_line
 from kt_widgets.errors import AlgebraError, CertificateError
 
-__all__ = ["Elimination", "Operations", "Transforms", "check_equal", "eliminate"]
+__all__ = ["Elimination", "Operations", "Transforms", "check_equal", "eliminate", "spare_columns"]
 
 
 def check_equal(left: LaurentMatrix, right: LaurentMatrix, name: str) -> None:
@@ -245,3 +245,26 @@ def eliminate(matrix: LaurentMatrix) -> Elimination:
         (len(core_rows), len(core_columns)),
     )
     return Elimination(matrix, core, core_rows, core_columns, pivots)
+
+
+def spare_columns(matrix: LaurentMatrix) -> list[tuple[int, Row]]:
+    """Columns that are combinations of the others, as a knot's matrix has one.
+
+    Each comes with a vector, 0 in the spare columns before it and a unit in its own place, that the matrix
+    sends to 0. Over Z the columns that are left need not be independent.
+
+    Examples
+    --------
+    >>> spare_columns(LaurentMatrix([["2", "2t", "3"]]))
+    [(0, {1: LaurentPolynomial('1'), 0: LaurentPolynomial('-t')})]
+    """
+    columns = list(range(matrix.shape[1]))
+    rows = matrix.sparse_rows()
+    found: list[tuple[int, Row]] = []
+    while (vector := kernel_vector(rows, columns, ring(matrix.over))) is not None:
+        spare = next((j for j in sorted(vector) if vector[j].is_unit()), None)
+        if spare is None:
+            break
+        columns.remove(spare)
+        found.append((spare, vector))
+    return found

@@ -9,8 +9,7 @@ from math import comb
 from operator import index
 from typing import Any, TypeAlias
 
-from kt_widgets.algebra.elimination import Elimination, Transforms, eliminate
-from kt_widgets.algebra.flint_rings import ring
+from kt_widgets.algebra.elimination import Elimination, Transforms, eliminate, spare_columns
 from kt_widgets.algebra.ideals import (
     Combination,
     Ideal,
@@ -21,7 +20,6 @@ from kt_widgets.algebra.ideals import (
 )
 from kt_widgets.algebra.laurent import LaurentPolynomial, gcd_of, subtract_product
 from kt_widgets.algebra.matrix import LaurentMatrix
-from kt_widgets.algebra.sparse import kernel_vector
 from kt_widgets.errors import AlgebraError, CertificateError, LimitError
 from kt_widgets.text.portable import Portable
 
@@ -31,6 +29,7 @@ __all__ = [
     "fitting_certificate",
     "fitting_divisor",
     "fitting_ideal",
+    "minors",
 ]
 
 MAX_MINORS = 50_000
@@ -39,10 +38,20 @@ MAX_MINORS = 50_000
 _Place: TypeAlias = tuple[tuple[int, ...], tuple[int, ...]]
 
 
-def _minors(core: LaurentMatrix, size: int) -> Iterator[tuple[_Place, LaurentPolynomial]]:
+def minors(core: LaurentMatrix, size: int) -> Iterator[tuple[_Place, LaurentPolynomial]]:
     """The nonzero minors of a size with their rows and columns, in order; the one of size 0 is 1.
 
     Expanded along the last row: the minors of the first rows serve all sets of rows that begin with them.
+
+    Raises
+    ------
+    LimitError
+        If there are more than `MAX_MINORS`.
+
+    Examples
+    --------
+    >>> [(place, str(f)) for place, f in minors(LaurentMatrix([["t", 2, 0], [0, 1, 1]]), 2)]
+    [(((0, 1), (0, 1)), 't'), (((0, 1), (0, 2)), 't'), (((0, 1), (1, 2)), '2')]
     """
     height, width = core.shape
     count = comb(height, size) * comb(width, size)
@@ -53,15 +62,15 @@ def _minors(core: LaurentMatrix, size: int) -> Iterator[tuple[_Place, LaurentPol
     lines = core.sparse_rows()
 
     def extended(
-        rows: tuple[int, ...], minors: dict[tuple[int, ...], LaurentPolynomial]
+        rows: tuple[int, ...], known: dict[tuple[int, ...], LaurentPolynomial]
     ) -> Iterator[tuple[_Place, LaurentPolynomial]]:
         if len(rows) == size:
-            yield from (((rows, columns), minors[columns]) for columns in sorted(minors))
+            yield from (((rows, columns), known[columns]) for columns in sorted(known))
             return
         missing = size - len(rows)
         for i in range(rows[-1] + 1 if rows else 0, height - missing + 1):
             sums: dict[tuple[int, ...], LaurentPolynomial] = {}
-            for columns, minor in minors.items():
+            for columns, minor in known.items():
                 negative = -minor
                 for j, f in lines[i].items():
                     place = bisect(columns, j)
@@ -121,19 +130,12 @@ def fitting_ideal(matrix: LaurentMatrix, k: int) -> Ideal:
     """
     _check_integral(matrix)
     elimination, size = _core(matrix, k)
-    return Ideal([minor for _, minor in _minors(_without_redundant_columns(elimination.core), size)])
+    return Ideal([minor for _, minor in minors(_without_spare_columns(elimination.core), size)])
 
 
-def _without_redundant_columns(core: LaurentMatrix) -> LaurentMatrix:
-    """Leave out relations that are combinations of the others, as a knot's matrix has one."""
-    columns = list(range(core.shape[1]))
-    lines = core.sparse_rows()
-    while (vector := kernel_vector(lines, columns, ring(core.over))) is not None:
-        redundant = next((j for j in sorted(vector) if vector[j].is_unit()), None)
-        if redundant is None:
-            break
-        columns.remove(redundant)
-    return core.submatrix(range(core.shape[0]), columns)
+def _without_spare_columns(core: LaurentMatrix) -> LaurentMatrix:
+    spare = {j for j, _ in spare_columns(core)}
+    return core.submatrix(range(core.shape[0]), [j for j in range(core.shape[1]) if j not in spare])
 
 
 def fitting_divisor(matrix: LaurentMatrix, k: int) -> LaurentPolynomial:
@@ -145,8 +147,8 @@ def fitting_divisor(matrix: LaurentMatrix, k: int) -> LaurentPolynomial:
     LaurentPolynomial('-1 + t', over='Q')
     """
     elimination, size = _core(matrix, k)
-    core = _without_redundant_columns(elimination.core)
-    return gcd_of((minor for _, minor in _minors(core, size)), matrix.over)
+    core = _without_spare_columns(elimination.core)
+    return gcd_of((minor for _, minor in minors(core, size)), matrix.over)
 
 
 @dataclass(frozen=True)
@@ -209,7 +211,7 @@ class FittingCertificate(Portable, kind="fitting certificate"):
         target = LaurentMatrix.blocks(LaurentMatrix.identity(units), self.core)
         transforms = Transforms(self.P, self.P_inverse, self.Q, self.Q_inverse)
         transforms.verify(self.matrix, target, ("P", "A", "Q"))
-        found = dict(_minors(self.core, max(self.core.shape[0] - self.k, 0)))
+        found = dict(minors(self.core, max(self.core.shape[0] - self.k, 0)))
         if list(found) != list(self.minors):
             raise CertificateError("the places are not those of the nonzero minors, in order", where="minors")
         values = tuple(found.values())
@@ -250,7 +252,7 @@ def fitting_certificate(matrix: LaurentMatrix, k: int) -> FittingCertificate:
     _check_integral(matrix)
     elimination, size = _core(matrix, k)
     transforms = elimination.transforms()
-    found = dict(_minors(elimination.core, size))
+    found = dict(minors(elimination.core, size))
     proof = Ideal.certificate(tuple(found.values()))
     return FittingCertificate(
         matrix,
