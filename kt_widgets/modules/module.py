@@ -240,6 +240,17 @@ class Module(Portable, kind="module"):
         kept = inverse.submatrix(range(size), range(units, size))
         return Module(elimination.core, self._in_ambient(kept), self.names, self.title)
 
+    def conjugate(self) -> Module:
+        """The module on which t acts as 1/t does on this one.
+
+        Examples
+        --------
+        >>> print(Module.from_matrix([["t - 2"]]).conjugate().order())
+        -1 + 2t
+        """
+        basis = None if self.basis is None else self.basis.conjugate()
+        return Module(self.relations.conjugate(), basis, self.ambient, self.title)
+
     def _in_ambient(self, columns: LaurentMatrix) -> LaurentMatrix:
         return columns if self.basis is None else self.basis @ columns
 
@@ -369,7 +380,7 @@ class Module(Portable, kind="module"):
         if isinstance(other, Module):
             raise AlgebraError(
                 "modules are not compared by ==",
-                accepted="comparing their invariant_factors(), fitting_ideal(k) or presentation_matrix()",
+                accepted="kt_widgets.modules.comparison.compare(m, n), whose verdict comes with a witness",
             )
         return NotImplemented
 
