@@ -9,9 +9,10 @@ from math import gcd, lcm
 from operator import index
 from typing import Any, TypeAlias
 
-from flint import fmpq_poly, fmpz, fmpz_mat, fmpz_poly, nmod_poly
+from flint import fmpq_poly, fmpz, fmpz_mat, fmpz_poly, nmod_mat, nmod_poly
 
 from kt_widgets.errors import AlgebraError
+from kt_widgets.text.printing import integer_text, number_text
 
 __all__ = [
     "MAX_PRIME",
@@ -23,6 +24,9 @@ __all__ = [
     "integer_inverse",
     "integer_kernel",
     "integer_solution",
+    "is_prime",
+    "prime_determinant",
+    "prime_product",
     "ring",
     "smith_diagonal",
 ]
@@ -105,7 +109,8 @@ class Ring:
             return index(value)  # type: ignore[arg-type]
         except TypeError:
             accepted = "an int or Fraction" if self.is_field else "an int (Fractions live over 'Q')"
-            raise AlgebraError(f"{value!r} is no coefficient of {self.text}", accepted=accepted) from None
+            said = number_text(value) if isinstance(value, Fraction) else repr(value)
+            raise AlgebraError(f"{said} is no coefficient of {self.text}", accepted=accepted) from None
 
 
 class _Integers(Ring):
@@ -172,7 +177,7 @@ class _PrimeField(Ring):
         if isinstance(value, Fraction):
             if value.denominator % self.p == 0:
                 raise AlgebraError(
-                    f"the denominator of {value} is 0 modulo {self.p}",
+                    f"the denominator of {number_text(value)} is 0 modulo {self.p}",
                     accepted=f"fractions whose denominator is prime to {self.p}",
                 )
             return value.numerator * pow(value.denominator, -1, self.p) % self.p
@@ -196,7 +201,7 @@ _RATIONALS = _Rationals()
 def _prime_field(p: int) -> Ring:
     if not 2 <= p < MAX_PRIME:
         raise AlgebraError(
-            f"{p} is no prime below 2^31", where="ring", accepted="'Z', 'Q' or a prime p < 2^31"
+            f"{integer_text(p)} is no prime below 2^31", where="ring", accepted="'Z', 'Q' or a prime p < 2^31"
         )
     if not fmpz(p).is_prime():
         small = next(d for d in range(2, p) if p % d == 0)
@@ -352,3 +357,38 @@ def integer_solution(rows: Sequence[Sequence[int]], target: Sequence[int]) -> li
     weighed = [[*relation[:-1], relation[-1] * weight] for relation in relations]
     relation = [int(x) for x in fmpz_mat(weighed).lll().tolist()[-1]]
     return [-x if relation[-1] > 0 else x for x in relation[:-1]]
+
+
+def is_prime(number: int) -> bool:
+    """Whether an integer is a prime.
+
+    Examples
+    --------
+    >>> is_prime(2**31 - 1), is_prime(2**32 + 1)
+    (True, False)
+    """
+    return bool(fmpz(number).is_prime())
+
+
+def prime_determinant(rows: Sequence[Sequence[int]], p: int) -> int:
+    """The determinant of a square matrix over the field of p elements, in [0, p).
+
+    Examples
+    --------
+    >>> prime_determinant([[0, 1], [2, 5]], 7)
+    5
+    """
+    entries = [value for row in rows for value in row]
+    return int(nmod_mat(len(rows), len(rows), entries, p).det())
+
+
+def prime_product(left: Sequence[int], right: Sequence[int], p: int) -> list[int]:
+    """The coefficients of the product of two polynomials over the field of p elements, lowest first.
+
+    Examples
+    --------
+    >>> prime_product([1, 1], [2, 0, 4], 5)
+    [2, 2, 4, 4]
+    """
+    product = nmod_poly(list(left), p) * nmod_poly(list(right), p)
+    return [int(c) for c in product.coeffs()]

@@ -13,7 +13,7 @@ from kt_widgets.algebra.flint_rings import FlintPolynomial, Ring, RingName, ring
 from kt_widgets.errors import AlgebraError, LimitError
 from kt_widgets.text.parsing import parse_polynomial
 from kt_widgets.text.portable import Portable
-from kt_widgets.text.printing import Style, polynomial_text
+from kt_widgets.text.printing import Style, integer_text, number_text, polynomial_text
 
 __all__ = ["MAX_BITS", "MAX_SPAN", "LaurentPolynomial", "Scalar", "gcd_of", "subtract_product"]
 
@@ -74,7 +74,13 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         if isinstance(coefficients, str):
             parsed = LaurentPolynomial.parse(coefficients, over)
             coefficients, lowest = parsed.coefficients, parsed._low + lowest
-        numbers = [base.number(c) for c in coefficients]
+        numbers: list[Any] = []
+        try:
+            for c in coefficients:
+                numbers.append(base.number(c))
+        except AlgebraError as error:
+            where = f"the coefficient of t^{lowest + len(numbers)}"
+            raise AlgebraError(error.what, where=where, accepted=error.accepted) from None
         start, stop = 0, len(numbers)
         while stop and not numbers[stop - 1]:
             stop -= 1
@@ -591,7 +597,11 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         numbers = self.coefficients
         value = sum(numbers)
         if abs(value) != 1 or numbers != numbers[::-1]:
-            reason = f"its value at 1 is {value}" if abs(value) != 1 else "its coefficients are no palindrome"
+            reason = (
+                f"its value at 1 is {integer_text(value)}"
+                if abs(value) != 1
+                else "its coefficients are no palindrome"
+            )
             raise AlgebraError(
                 f"{self} has no symmetric form: {reason}",
                 accepted="palindromic coefficients with sum 1 or -1",
@@ -629,7 +639,7 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         """``{"lowest", "coefficients", "over"}``; fractions are strings "p/q"."""
         numbers = self.coefficients
         if self.over == "Q":
-            numbers = tuple(c.numerator if c.denominator == 1 else str(c) for c in numbers)
+            numbers = tuple(c.numerator if c.denominator == 1 else number_text(c) for c in numbers)
         return {"lowest": self._low, "coefficients": list(numbers), "over": self.over}
 
     @classmethod

@@ -56,9 +56,19 @@ class Portable:
         raise NotImplementedError(f"{cls.__name__} has no from_data")
 
     def to_json(self, indent: int | None = None) -> str:
-        """Give the value as JSON text: format, version, kind and data, keys sorted."""
+        """Give the value as JSON text: format, version, kind and data, keys sorted.
+
+        Raises
+        ------
+        LimitError
+            If an integer has more digits than Python writes to JSON and reads from it (4300).
+        """
         document = {"format": FORMAT, "version": VERSION, "kind": self.kind, "data": self.to_data()}
-        return json.dumps(document, indent=indent, sort_keys=True, ensure_ascii=False)
+        try:
+            return json.dumps(document, indent=indent, sort_keys=True, ensure_ascii=False)
+        except ValueError as error:
+            accepted = "integers of at most 4300 digits"
+            raise LimitError(f"this {self.kind} cannot be JSON: {error}", accepted=accepted) from None
 
 
 def _object(pairs: list[tuple[str, Any]]) -> dict[str, Any]:

@@ -14,10 +14,12 @@ __all__ = [
     "MAX_LATEX_ENTRIES",
     "Style",
     "chain_text",
+    "integer_text",
     "lift_text",
     "matrix_text",
     "matrix_too_large",
     "name_text",
+    "number_text",
     "polynomial_text",
     "presentation_text",
     "word_text",
@@ -45,10 +47,38 @@ def _power(base: str, exponent: int, style: Style) -> str:
     return f"{base}^{exponent}"
 
 
-def _number(value: int | Fraction, style: Style) -> str:
-    if style == "latex" and value.denominator != 1:
-        return f"\\frac{{{value.numerator}}}{{{value.denominator}}}"
-    return str(value)
+_SHORT = 2_000  # bits; Python may be set to refuse to print from 640 digits on, and does from 4300 on
+
+
+def integer_text(value: int) -> str:
+    """Print an integer of any length.
+
+    Examples
+    --------
+    >>> integer_text(-12), len(integer_text(10**5000))
+    ('-12', 5001)
+    """
+    if value < 0:
+        return "-" + integer_text(-value)
+    if value.bit_length() <= _SHORT:
+        return str(value)
+    half = value.bit_length() * 3 // 20  # a digit has 10/3 bits
+    high, low = divmod(value, 10**half)
+    return integer_text(high) + integer_text(low).zfill(half)
+
+
+def number_text(value: int | Fraction, style: Style = "plain") -> str:
+    """Print an integer or a fraction of any length.
+
+    Examples
+    --------
+    >>> number_text(Fraction(-1, 2)), number_text(Fraction(1, 2), "latex"), number_text(Fraction(3))
+    ('-1/2', '\\\\frac{1}{2}', '3')
+    """
+    numerator, denominator = integer_text(value.numerator), integer_text(value.denominator)
+    if denominator == "1":
+        return numerator
+    return f"\\frac{{{numerator}}}{{{denominator}}}" if style == "latex" else f"{numerator}/{denominator}"
 
 
 def polynomial_text(terms: Mapping[int, int | Fraction], style: Style = "plain", variable: str = "t") -> str:
@@ -78,12 +108,12 @@ def polynomial_text(terms: Mapping[int, int | Fraction], style: Style = "plain",
             continue
         size = -coefficient if coefficient < 0 else coefficient
         if exponent == 0:
-            body = _number(size, style)
+            body = number_text(size, style)
         elif size == 1:
             body = _power(variable, exponent, style)
         else:
             gap = " " if size.denominator != 1 and style != "latex" else ""
-            body = _number(size, style) + gap + _power(variable, exponent, style)
+            body = number_text(size, style) + gap + _power(variable, exponent, style)
         if not pieces:
             pieces.append(minus + body if coefficient < 0 else body)
         else:

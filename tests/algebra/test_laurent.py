@@ -301,3 +301,23 @@ def test_sympy_agrees():
     t = sympy.Symbol("t")
     assert sympy.expand(f._sympy_() - (t**-2 / 2 - 3 + t)) == 0
     assert sympy.expand(sympy.sympify(f) ** 2 - sympy.sympify(f * f)) == 0
+
+
+def test_numbers_longer_than_python_prints_are_printed():
+    # Python refuses str() of integers with more than 4300 digits.
+    f = LaurentPolynomial([Fraction(10**5000, 3), -(10**9000)], over="Q")
+    digits = "1" + "0" * 5000
+    assert str(f) == f"{digits}/3 - 1{'0' * 9000}t"
+    assert digits in f.latex()
+    assert digits in repr(f)
+    assert f.to_data()["coefficients"][0] == f"{digits}/3"
+    with pytest.raises(LimitError, match="4300 digits"):
+        f.to_json()
+    with pytest.raises(AlgebraError, match=f"^{digits} is no prime below"):
+        LaurentPolynomial([1], over=10**5000)
+
+
+def test_a_refused_coefficient_has_its_place():
+    with pytest.raises(AlgebraError, match=r"^3/4 is no coefficient of Z\[t,1/t\]") as refused:
+        LaurentPolynomial.parse("t^-1 + 3/4 t^2")
+    assert refused.value.where == "the coefficient of t^2"
