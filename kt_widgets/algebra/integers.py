@@ -12,6 +12,7 @@ from typing import Any
 
 from kt_widgets.algebra.elimination import Transforms, eliminate
 from kt_widgets.algebra.flint_rings import hermite_transform, integer_inverse, smith_diagonal
+from kt_widgets.algebra.laurent import LaurentPolynomial, subtract_product
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.errors import AlgebraError, CertificateError, LimitError
 from kt_widgets.text.portable import Portable
@@ -19,7 +20,7 @@ from kt_widgets.text.portable import Portable
 __all__ = [
     "MAX_INTEGER_SIDE",
     "IntegerSmithForm",
-    "at_root_of_unity",
+    "at_companion",
     "integer_factors",
     "integer_smith_form",
 ]
@@ -204,43 +205,66 @@ def _not_dividing(diagonal: Sequence[int]) -> int | None:
     return None
 
 
-def at_root_of_unity(matrix: LaurentMatrix, n: int, *, reduced: bool) -> LaurentMatrix:
+def at_companion(matrix: LaurentMatrix, modulus: LaurentPolynomial) -> LaurentMatrix:
     """The integer matrix of a matrix over Z[t,1/t] on the powers 1, t, ... of Z[t,1/t]/(f).
 
-    f is t^n - 1, or nu_n = 1 + t + ... + t^(n-1) if `reduced`; every entry becomes the block of its
-    multiplication, a polynomial in the companion matrix of f.
+    Every entry becomes the block of its multiplication, a polynomial in the companion matrix of f.
+
+    Parameters
+    ----------
+    matrix : LaurentMatrix
+        Over "Z".
+    modulus : LaurentPolynomial
+        f, whose lowest exponent is 0 and whose lowest and leading coefficients are 1 or -1.
 
     Raises
     ------
+    AlgebraError
+        If f is not such a polynomial.
     LimitError
         Beyond `MAX_INTEGER_SIDE`.
 
     Examples
     --------
-    >>> print(at_root_of_unity(LaurentMatrix([["1 - t + t^2"]]), 3, reduced=True))
+    >>> f = LaurentPolynomial.parse("1 + t + t^2")
+    >>> print(at_companion(LaurentMatrix([["1 - t + t^2"]]), f))
     [[0,  2],
      [-2, 2]]
     """
-    size = n - 1 if reduced else n
+    ends = [modulus.coefficient(e) for e in (modulus.lowest, modulus.highest)]
+    if modulus.over != "Z" or modulus.lowest or any(abs(c) != 1 for c in ends):
+        raise AlgebraError(
+            f"powers of t are no basis modulo {modulus}",
+            accepted="a polynomial over Z from t^0 on, with lowest and leading coefficient 1 or -1",
+        )
+    size = modulus.span()
     height, width = size * matrix.shape[0], size * matrix.shape[1]
     if max(height, width) > MAX_INTEGER_SIDE:
         raise LimitError(
             f"an integer matrix of shape {(height, width)}",
-            accepted=f"at most {MAX_INTEGER_SIDE} rows and columns: a smaller n",
+            accepted=f"at most {MAX_INTEGER_SIDE} rows and columns: a modulus of smaller degree",
         )
-    return LaurentMatrix.from_monomials(_blocks(matrix, n, size), (height, width))
+    monomials = (
+        (i * size + k, j * size + shift, 0, c)
+        for i, j, f in matrix.entries()
+        for shift, column in enumerate(_multiples(f, modulus))
+        for k, c in enumerate(column)
+        if c
+    )
+    return LaurentMatrix.from_monomials(monomials, (height, width))
 
 
-def _blocks(matrix: LaurentMatrix, n: int, size: int) -> Iterator[tuple[int, int, int, int]]:
-    """The integers of `at_root_of_unity` as monomials: t^shift times an entry, exponents taken modulo n."""
-    for i, j, f in matrix.entries():
-        folded = [0] * n
-        for exponent, c in f.terms().items():
-            folded[exponent % n] += c
-        for shift in range(size):
-            image = folded[n - shift :] + folded[: n - shift]
-            # Modulo nu_n the power t^(n-1) is -(1 + t + ... + t^(n-2)).
-            last = image[-1] if size < n else 0
-            for k, c in enumerate(image[:size]):
-                if c != last:
-                    yield i * size + k, j * size + shift, 0, c - last
+def _multiples(f: LaurentPolynomial, modulus: LaurentPolynomial) -> Iterator[list[int]]:
+    """The coefficients of f, t f, ..., t^(d-1) f modulo a polynomial of degree d with units at both ends."""
+    down, size = modulus.coefficients, modulus.span()
+    start = f * LaurentPolynomial.monomial(-min(f.lowest, 0))
+    rest = subtract_product(start, start.floor_quotient(modulus), modulus)
+    column = [int(rest.coefficient(e)) for e in range(size)]
+    for _ in range(-min(f.lowest, 0)):
+        # Divided by t: the lowest coefficient is taken away by a multiple of the modulus.
+        multiple = column[0] * down[0] if size else 0
+        column = [c - multiple * d for c, d in zip([*column, 0], down, strict=True)][1:]
+    for _ in range(size):
+        yield column
+        multiple = column[-1] * down[-1]
+        column = [c - multiple * d for c, d in zip([0, *column], down, strict=True)][:-1]

@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING, Any
 from kt_widgets.algebra.elimination import Transforms, check_equal, eliminate
 from kt_widgets.algebra.integers import (
     IntegerSmithForm,
-    at_root_of_unity,
+    at_companion,
     integer_factors,
     integer_smith_form,
 )
@@ -86,8 +86,8 @@ class CyclicCover:
 
     @cached_property
     def _factors(self) -> tuple[int, ...]:
-        matrix, reduced = self._presented
-        return integer_factors(at_root_of_unity(eliminate(matrix).core, self.n, reduced=reduced))
+        matrix, _ = self._presented
+        return integer_factors(at_companion(eliminate(matrix).core, self.modulus()))
 
     def invariant_factors(self) -> tuple[int, ...]:
         """H_1: integers > 1, each dividing the next, then a 0 for each free summand Z.
@@ -115,7 +115,7 @@ class CyclicCover:
         """The invariant factors with everything that proves them."""
         matrix, reduced = self._presented
         elimination = eliminate(matrix)
-        smith = integer_smith_form(at_root_of_unity(elimination.core, self.n, reduced=reduced))
+        smith = integer_smith_form(at_companion(elimination.core, self.modulus()))
         transforms = elimination.transforms()
         return CyclicCoverCertificate(
             matrix,
@@ -204,7 +204,7 @@ class CyclicCoverCertificate(Portable, kind="cyclic cover certificate"):
         target = LaurentMatrix.blocks(LaurentMatrix.identity(units), self.core)
         transforms = Transforms(self.P, self.P_inverse, self.Q, self.Q_inverse)
         transforms.verify(self.matrix, target, ("P", "A", "Q"))
-        image = at_root_of_unity(self.core, self.n, reduced=self.reduced)
+        image = at_companion(self.core, _modulus(self.n, self.reduced))
         check_equal(self.smith.matrix, image, "the integer matrix")
         self.smith.verify()
         found = self.smith.factors

@@ -12,7 +12,7 @@ from sympy.matrices.normalforms import invariant_factors
 
 from kt_widgets.algebra.integers import (
     IntegerSmithForm,
-    at_root_of_unity,
+    at_companion,
     integer_factors,
     integer_smith_form,
 )
@@ -80,24 +80,37 @@ def test_polynomials_are_no_integers():
         with pytest.raises(LimitError):
             work(LaurentMatrix.zero(3001, 1))
     with pytest.raises(LimitError):
-        at_root_of_unity(LaurentMatrix([["t"]]), 10_000, reduced=False)
+        at_companion(LaurentMatrix([["t"]]), LaurentPolynomial.monomial(10_000) - 1)
 
 
 polynomials = st.builds(LaurentPolynomial, st.lists(st.integers(-3, 3), max_size=4), st.integers(-5, 3))
 
 
-@given(polynomials, polynomials, st.integers(1, 6), st.booleans())
-def test_blocks_are_the_ring_modulo_a_polynomial(f, g, n, reduced):
+moduli = st.builds(
+    lambda low, inner, high: LaurentPolynomial([low, *inner, high]),
+    st.sampled_from([1, -1]),
+    st.lists(st.integers(-3, 3), max_size=3),
+    st.sampled_from([1, -1]),
+)
+
+
+@given(polynomials, polynomials, moduli)
+def test_blocks_are_the_ring_modulo_a_polynomial(f, g, modulus):
     def block(h):
-        return at_root_of_unity(LaurentMatrix([[h]]), n, reduced=reduced)
+        return at_companion(LaurentMatrix([[h]]), modulus)
 
     assert block(f) @ block(g) == block(f * g)
     assert block(f) + block(g) == block(f + g)
+    assert block(modulus).is_zero()
     t = LaurentPolynomial.monomial(1)
-    assert block(t**n - 1).is_zero()
-    if reduced:
-        assert block(sum((t**k for k in range(n)), t - t)).is_zero()
-    if f and not reduced:
-        # the first column is f on the powers of t, modulo t^n - 1
-        column = [sum(c for e, c in f.terms().items() if e % n == k) for k in range(n)]
-        assert [int(c(1)) for c in block(f).column(0)] == column
+    assert block(t * 0 + 1) == LaurentMatrix.identity(modulus.span())
+    # t takes each power but the last one to the next
+    for k in range(modulus.span() - 1):
+        assert [int(c(1)) for c in block(t).column(k)] == [int(i == k + 1) for i in range(modulus.span())]
+
+
+def test_without_units_at_both_ends_powers_of_t_are_no_basis():
+    for text in ("2 + t", "1 + 2t", "t + t^2", "0", "3"):
+        with pytest.raises(AlgebraError, match="no basis"):
+            at_companion(LaurentMatrix([["t"]]), LaurentPolynomial.parse(text))
+    assert at_companion(LaurentMatrix([["t"]]), LaurentPolynomial([1])).shape == (0, 0)
