@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import difflib
 import re
+import reprlib
 from dataclasses import dataclass, field
 
 from kt_widgets.errors import LimitError, ParseError
@@ -80,7 +81,9 @@ def read_line(text: str) -> Line:
         near = difflib.get_close_matches(notation, NOTATIONS, n=1)
         hint = f"; the nearest is {near[0]}" if near else ""
         raise ParseError(
-            f"{first!r} is not the name of a notation{hint}", where=_position(text, at), accepted=_examples()
+            f"{reprlib.repr(first)} is not the name of a notation{hint}",
+            where=_position(text, at),
+            accepted=_examples(),
         )
     return _read_body(text, notation, tokens[1:])
 
@@ -102,7 +105,10 @@ def _read_body(text: str, notation: str, tokens: list[tuple[str, str, int]]) -> 
         elif kind == "name":
             option = word.lower()
             if option not in _OPTIONS[notation]:
-                problem, accepted = f"{word!r} is not known after {notation}", " or ".join(_OPTIONS[notation])
+                problem, accepted = (
+                    f"{reprlib.repr(word)} is not known after {notation}",
+                    " or ".join(_OPTIONS[notation]),
+                )
             elif option in line.options:
                 problem, accepted = f"{option} is given twice", f"{option} once"
             else:

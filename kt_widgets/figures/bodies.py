@@ -16,6 +16,7 @@ from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.covers.chains import ChainComplex
 from kt_widgets.covers.cover import Cover
 from kt_widgets.figures.drawing import Drawing
+from kt_widgets.figures.tables import LOWERED
 from kt_widgets.groups.presentations import Presentation
 from kt_widgets.places import Place
 from kt_widgets.text.printing import chain_text, matrix_too_large, name_text, word_text
@@ -46,15 +47,30 @@ MAX_TEXT = 600
 """The longest cycle, in signs, that is written out."""
 
 
-def maths(text: str) -> str:
-    """Unicode mathematics as HTML, small letters in italics.
+_INDICES = str.maketrans(LOWERED, "-0123456789")
+
+
+def maths(text: str, italic: bool = True) -> str:
+    """Unicode mathematics as HTML: lowered digits as indices, small letters in italics.
+
+    Few fonts have lowered digits of the right size, and x12 is read where x₁₂ is copied from. Exponents stay
+    unicode, since x−1 would be something else. Words are kept upright by `italic=False`.
 
     Examples
     --------
-    >>> maths("Z[t] < ab")
-    'Z[<i>t</i>] &lt; <i>ab</i>'
+    >>> maths("Z[t] < ab"), maths("x₁₂⁻¹")
+    ('Z[<i>t</i>] &lt; <i>ab</i>', '<i>x</i><sub>12</sub>⁻¹')
+    >>> maths("order of H₁", italic=False)
+    'order of H<sub>1</sub>'
     """
-    return re.sub(r"[a-z]+|[<>&]", lambda m: escape(m[0]) if m[0] in "<>&" else f"<i>{m[0]}</i>", text)
+
+    def marked(match: re.Match[str]) -> str:
+        piece = match[0]
+        if piece[0] in LOWERED:
+            return f"<sub>{piece.translate(_INDICES)}</sub>"
+        return f"<i>{piece}</i>" if italic and piece.isalpha() else escape(piece)
+
+    return re.sub(rf"[a-z]+|[{LOWERED}]+|[<>&]", marked, text)
 
 
 def _attributes(**values: object) -> str:
@@ -96,7 +112,8 @@ def picture(drawing: Drawing, name: str, python: str = "", traces: bool = False)
     buttons = [("svg", "SVG", {"data_name": name}), ("png", "PNG", {"data_name": name})]
     if python:
         buttons.append(("copy", "copy Python", {"data_text": python}))
-    held = _attributes(data_traces="") if traces else ""
+    # A strip keeps its width where there is little room, and is scrolled.
+    held = _attributes(data_traces="", style=f"--kt-width: {drawing.scene.width:g}pt") if traces else ""
     return f'<figure class="kt-figure"{held}>{drawing.svg()}{_tools(*buttons)}</figure>'
 
 
@@ -320,7 +337,8 @@ def homology(cover: Cover, rings: Sequence[RingName] = ("Z", "Q", 2, 3, 5), more
     for name in rings:
         found = facts(cover, name)
         rows = "".join(
-            f"<dt>{escape(f.name)}</dt><dd><span>{maths(f.value)}</span> <small>{escape(f.note)}</small></dd>"
+            f"<dt>{maths(f.name, italic=False)}</dt>"
+            f"<dd><span>{maths(f.value)}</span> <small>{escape(f.note)}</small></dd>"
             for f in found
         )
         parts.append(

@@ -383,6 +383,9 @@ def _trace(strip: _Strip, visits: Sequence[Visit]) -> list[Item]:
 def _window(
     visits: Iterable[Visit], weights: Mapping[str, int], lo: int | None, hi: int | None
 ) -> tuple[int, int]:
+    for name, end in (("lo", lo), ("hi", hi)):
+        if end is not None and (not isinstance(end, int) or isinstance(end, bool)):
+            raise KtError(f"{end!r} is not a power of t", where=name, accepted="a whole number")
     ends = [end for v in visits for end in (v.start, v.end)] or [0, *weights.values()]
     low, high = (min(0, *ends) if lo is None else lo), (max(1, *ends) if hi is None else hi)
     if not 1 <= high - low <= MAX_WINDOW:
@@ -423,8 +426,13 @@ def cover_scene(
     Raises
     ------
     KtError
-        If the window or a relator cannot be drawn.
+        If `x` is no cover, or the window or a relator cannot be drawn.
     """
+    if not isinstance(x, Cover):
+        raise KtError(
+            f"an object of type {type(x).__name__} is not a cover",
+            accepted="a Cover, such as d.cover() of a diagram d, or kt.Cover(presentation)",
+        )
     look = preset_named(preset)
     traces = {r: tuple(x.visits(r)) for r in relators}
     traces = {r: visits for r, visits in traces.items() if visits}
@@ -547,7 +555,7 @@ def cover(
     Raises
     ------
     KtError
-        If the trace does not fit between `lo` and `hi`, or the window is empty or too long.
+        If `x` is no cover, the trace does not fit between `lo` and `hi`, or the window is empty or too long.
 
     Examples
     --------
@@ -558,7 +566,7 @@ def cover(
     >>> [item.role for item in drawing.scene.at("vertex:3")]
     ['dropline', 'rail', 'vertex', 'label']
     """
-    traced = trace if x.presentation.relators else None
+    traced = trace if isinstance(x, Cover) and x.presentation.relators else None
     return Drawing(
         cover_scene(
             x,

@@ -73,7 +73,7 @@ class Drawing:
                 data = self.png()
             case other:
                 raise KtError(
-                    f"a picture cannot be saved as {other or 'a file without ending'!r}",
+                    f"a picture cannot be saved as {other}" if other else "the file's name has no ending",
                     where=str(path),
                     accepted=".svg, .pdf, .png or .tikz",
                 )

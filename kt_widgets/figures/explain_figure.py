@@ -28,10 +28,21 @@ def _arc(start: Point, end: Point, push: Point) -> tuple[Point, ...]:
 
 def explain_scene(c: ChainComplex, entry: tuple[str | int, str | int], preset: str = "paper") -> Scene:
     """The scene of `explain`."""
+    if not isinstance(c, ChainComplex):
+        raise AlgebraError(
+            f"an object of type {type(c).__name__} is not a chain complex",
+            accepted="the chain complex of a cover, such as d.cover().chains() of a diagram d",
+        )
     if c.cover is None:
         raise AlgebraError(
             "this complex was entered as matrices, so no letters stand behind its entries",
             accepted="the chain complex of a cover, such as kt.Cover(presentation).chains()",
+        )
+    if not isinstance(entry, tuple | list) or len(entry) != 2:
+        raise AlgebraError(
+            f"{entry!r} is not the place of an entry",
+            where="entry",
+            accepted=f"a generator and a relator, such as {(c.generators or ('a',))[0], 'r1'}",
         )
     row, column = (int(i) for i in c.place(2, *entry).indices[1:])
     return _Explanation(
@@ -205,7 +216,7 @@ def explain(c: ChainComplex, entry: tuple[str | int, str | int], preset: str = "
     Raises
     ------
     AlgebraError
-        If there is no such row or column, or the complex does not come from a cover.
+        If there is no such row or column, or `c` is no chain complex of a cover.
 
     Examples
     --------

@@ -9,10 +9,11 @@ from kt_widgets.figures.lettering import extent
 from kt_widgets.figures.presets import label_size, preset_named
 from kt_widgets.figures.scene import Item, Label, Scene, Stroke
 
-__all__ = ["lines_scene", "table_scene", "typeset"]
+__all__ = ["LOWERED", "RAISED", "lines_scene", "table_scene", "typeset"]
 
-_RAISED, _LOWERED = "⁻⁰¹²³⁴⁵⁶⁷⁸⁹", "₋₀₁₂₃₄₅₆₇₈₉"
-_LINE = str.maketrans(_RAISED + _LOWERED, "-0123456789" * 2)
+RAISED, LOWERED = "⁻⁰¹²³⁴⁵⁶⁷⁸⁹", "₋₀₁₂₃₄₅₆₇₈₉"
+"""The signs of unicode's exponents and indices."""
+_LINE = str.maketrans(RAISED + LOWERED, "-0123456789" * 2)
 
 
 def typeset(text: str) -> str:
@@ -32,8 +33,8 @@ def _typeset(piece: str) -> str:
     letters = piece.rstrip(":,")
     if not any(sign.isalpha() for sign in piece) or (letters.isalpha() and len(letters) > 1):
         return piece
-    raised = re.sub(f"[{_RAISED}]+", lambda m: f"^{{{m[0].translate(_LINE)}}}", piece)
-    return f"${re.sub(f'[{_LOWERED}]+', lambda m: f'_{{{m[0].translate(_LINE)}}}', raised)}$"
+    raised = re.sub(f"[{RAISED}]+", lambda m: f"^{{{m[0].translate(_LINE)}}}", piece)
+    return f"${re.sub(f'[{LOWERED}]+', lambda m: f'_{{{m[0].translate(_LINE)}}}', raised)}$"
 
 
 def lines_scene(lines: Sequence[str], title: str, preset: str = "screen") -> Scene:

@@ -56,7 +56,7 @@ class Subject:
                 read = Presentation.parse(text) if presented else Diagram.parse(text)
                 return replace(cls.of(read), typed=text)
         raise KtError(
-            f"a {type(value).__name__} cannot be shown in linked views",
+            f"an object of type {type(value).__name__} cannot be shown in linked views",
             accepted="a Diagram, a Presentation, a Cover, or a line of text",
         )
 

@@ -21,7 +21,7 @@ from kt_widgets.widgets.view import View, bundle, linked, reporting
 
 __all__ = ["Workbench"]
 
-_WIDE_MATRIX = 6  # more columns than this take the whole width
+_WIDE_MATRIX = 6  # matrices with more columns than this take the whole width
 
 
 class Workbench(ipywidgets.Box):  # type: ignore[misc]  # ipywidgets has no types
@@ -126,12 +126,15 @@ class Workbench(ipywidgets.Box):  # type: ignore[misc]  # ipywidgets has no type
         self.selected = change["new"]
 
     def _lay_out(self, subject: Subject) -> None:
-        """Beside the diagram there is room for the relators and a narrow matrix."""
-        wide = len(subject.cover.presentation.boundary_words) > _WIDE_MATRIX
-        self.boundary2.add_class("kt-wide") if wide else self.boundary2.remove_class("kt-wide")
-        drawn, below = (self.diagram,) if subject.diagram else (), (self.boundary2,) if wide else ()
-        self._words.children = (self.relators,) if wide else (self.relators, self.boundary2)
-        self._results.children = (self.homology, self.boundary1)
+        """Beside the diagram there is room for the relators and narrow matrices."""
+        p = subject.cover.presentation
+        wide = max(len(p.boundary_words), len(p.generators)) > _WIDE_MATRIX
+        matrices = (self.boundary2, self.boundary1)
+        for view in matrices:
+            view.add_class("kt-wide") if wide else view.remove_class("kt-wide")
+        drawn, below = (self.diagram,) if subject.diagram else (), matrices if wide else ()
+        self._words.children = (self.relators,) if wide else (self.relators, *matrices)
+        self._results.children = (self.homology,)
         parts = (self.line, *drawn, self._words, self.cover, *below, self.explanation, self._results)
         self.children = parts
 

@@ -6,6 +6,7 @@ import math
 import subprocess
 import sys
 from itertools import pairwise
+from typing import Any
 
 import pytest
 
@@ -189,6 +190,18 @@ def test_the_window_grows_with_the_trace_and_can_be_given() -> None:
 def test_a_window_that_cannot_be_drawn_is_refused(lo: int, hi: int) -> None:
     with pytest.raises(KtError, match="accepted"):
         cover(Cover(Presentation.parse("< x, y | x^3 = y^2 >")), lo=lo, hi=hi)
+
+
+@pytest.mark.parametrize("wrong", [{"lo": "a"}, {"hi": 2.5}, {"lo": True}])
+def test_ends_of_the_window_are_whole_numbers(wrong: dict[str, Any]) -> None:
+    with pytest.raises(KtError, match=r"not a power of t \(at (lo|hi)\); accepted: a whole number"):
+        cover(COVERS[0], **wrong)
+
+
+@pytest.mark.parametrize("wrong", [Diagram.from_braid([1, 1]), "< a | >", None])
+def test_what_is_no_cover_is_refused(wrong: Any) -> None:
+    with pytest.raises(KtError, match="is not a cover; accepted: a Cover"):
+        cover(wrong)
 
 
 def test_an_unknown_relator_is_refused() -> None:

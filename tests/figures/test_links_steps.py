@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from html.parser import HTMLParser
+from typing import Any
 
 import pytest
 from hypothesis import given
@@ -172,3 +173,16 @@ def test_an_entry_that_does_not_exist_is_refused() -> None:
     for entry in [("z", "r1"), ("a", "r9"), (0, 1)]:
         with pytest.raises(AlgebraError):
             explain(c, entry)
+
+
+@pytest.mark.parametrize("entry", ["a", ("a",), 5, ("a", "r1", 1)])
+def test_what_is_no_entry_is_refused_with_an_example(entry: Any) -> None:
+    c = Cover(Presentation.parse("< a, b | a b a = b a b >")).chains()
+    with pytest.raises(AlgebraError, match=r"not the place of an entry.*accepted: .*\('a', 'r1'\)"):
+        explain(c, entry)
+
+
+def test_only_a_chain_complex_is_explained() -> None:
+    x: Any = Cover(Presentation.parse("< a, b | a b a = b a b >"))
+    with pytest.raises(AlgebraError, match="type Cover is not a chain complex; accepted: the chain complex"):
+        explain(x, ("a", "r1"))

@@ -56,7 +56,11 @@ def test_coordinates_are_rounded_and_have_no_negative_zero() -> None:
         (lambda: to_svg(Scene((Label("x", "$a_{1$", (0, 0)),), 9, 9)), "brace"),
         (lambda: to_svg(Scene((), 9, 9, preset="poster")), "preset 'poster'.*paper, talk, screen"),
         (lambda: to_png(SCENE, dpi=1), "dots per inch"),
-        (lambda: Drawing(SCENE).save("picture.gif"), "'.gif'.*picture.gif.*.svg, .pdf, .png or .tikz"),
+        (
+            lambda: Drawing(SCENE).save("picture.gif"),
+            "saved as .gif .*picture.gif.*.svg, .pdf, .png or .tikz",
+        ),
+        (lambda: Drawing(SCENE).save("picture"), "name has no ending.*picture.*.svg, .pdf, .png or .tikz"),
     ],
 )
 def test_refusals_name_the_place(make: object, message: str) -> None:

@@ -90,8 +90,33 @@ def test_wrong_text_is_answered_under_the_line_and_changes_nothing(text: str) ->
 def test_a_wrong_value_is_refused_at_once() -> None:
     with pytest.raises(kt.KtError, match="accepted"):
         Workbench("braid 1 x")
-    with pytest.raises(kt.KtError, match="cannot be shown"):
+    with pytest.raises(kt.KtError, match="type int cannot be shown"):
         Workbench(3)  # type: ignore[arg-type]
+
+
+def test_an_error_does_not_repeat_a_long_text() -> None:
+    bench = Workbench("braid 1 1 1")
+    for text in ("x" * 100_000, "braid 1 " + "x" * 10_000):
+        bench.line.text = text
+        assert 0 < len(bench.line.error) < 300
+    bench.close()
+
+
+def test_wide_matrices_have_the_whole_width() -> None:
+    bench = Workbench("braid 1 1 1")
+    matrices = (bench.boundary2, bench.boundary1)
+    assert not any("kt-wide" in view._dom_classes for view in matrices)
+    bench.show("braid 1 1 1 1 1 1 1 1 1")
+    assert all("kt-wide" in view._dom_classes and view in bench.children for view in matrices)
+    bench.show("< a, b | a b a = b a b >")
+    assert not any("kt-wide" in view._dom_classes for view in matrices)
+    bench.close()
+
+
+def test_indices_are_lowered_by_the_page_and_exponents_can_be_copied() -> None:
+    view = RelatorView("< x1, x2 | x1 x2^-1 >")
+    assert "<i>x</i><sub>2</sub>⁻¹" in view.body
+    view.close()
 
 
 def test_what_is_too_large_for_a_picture_is_said_in_its_place() -> None:
