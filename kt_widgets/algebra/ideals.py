@@ -312,6 +312,7 @@ def _canonical(generators: Sequence[LaurentPolynomial]) -> tuple[LaurentPolynomi
 
 
 _BATCH = 4
+_LONG = 60
 
 
 def _spanned(generators: Sequence[LaurentPolynomial]) -> list[LaurentPolynomial]:
@@ -319,15 +320,20 @@ def _spanned(generators: Sequence[LaurentPolynomial]) -> list[LaurentPolynomial]
 
     The Hermite form of the generators' multiples by powers of t, up to the degree where Bezout's identity
     over Q is found, has nearly all of it, with coefficients as small as the ideal allows; `_close` and
-    `_saturate` bring the rest.
+    `_saturate` bring the rest. Where that form is large and an integer among the generators keeps all
+    coefficients small anyway, it is left out.
     """
+    basis: list[LaurentPolynomial] = []
     length = 2 * max(f.span() for f in generators) + 1
+    if length > _LONG and any(f.span() == 0 for f in generators):
+        _close(basis, list(generators))
+        _saturate(basis)
+        return basis
     rows = [
         [0] * shift + list(f.coefficients[::-1]) + [0] * (length - 1 - f.span() - shift)
         for f in generators
         for shift in range(length - f.span())
     ]
-    basis: list[LaurentPolynomial] = []
     _close(basis, [LaurentPolynomial(row[::-1]).normal_form() for row in hermite_rows(rows)])
     _saturate(basis)
     return basis

@@ -355,3 +355,11 @@ def test_integer_solutions(rows, data):
     assert [sum(c * row[j] for c, row in zip(found, rows, strict=True)) for j in range(3)] == target
     other = data.draw(st.lists(small, min_size=3, max_size=3))
     assert (integer_solution(rows, other) is not None) == (hermite_rows(rows) == hermite_rows([*rows, other]))
+
+
+def test_an_integer_among_long_generators():
+    # Both ways to a basis give the same: with the Hermite form, and without it where an integer bounds it.
+    assert str(Ideal.parse("t^99 + t + 1, 6")) == "(6, 1 + t + t^99)"
+    f, g = (LaurentPolynomial.parse(text) for text in ("(1 + 2t - t^3) (t^32 - 5)", "3 - t^30 + 4t^35"))
+    assert Ideal([f, g, 81]) == Ideal([f, g, "81 + 81t", "81t^2"])
+    assert Ideal([f, 81]) == Ideal([f, 81 + f, 162 - 5 * f])
