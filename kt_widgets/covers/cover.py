@@ -9,7 +9,7 @@ from itertools import chain
 from math import gcd
 from typing import Any
 
-from kt_widgets.algebra.fitting import fitting_ideal
+from kt_widgets.algebra.fitting import fitting_divisor, fitting_ideal
 from kt_widgets.algebra.ideals import Ideal
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.algebra.matrix import LaurentMatrix
@@ -204,6 +204,17 @@ class Cover(Portable, kind="cover"):
         (0) (1 - t + t^2) (1)
         """
         return fitting_ideal(self.chains().boundary(2), k)
+
+    def alexander_polynomial(self, k: int) -> LaurentPolynomial:
+        """The k-th Alexander polynomial: the gcd of the Alexander ideal E_k, up to units in normal form.
+
+        Examples
+        --------
+        >>> x = Cover(Presentation.parse("< a, b | a b a = b a b >"))
+        >>> print(x.alexander_polynomial(1), x.alexander_polynomial(2))
+        1 - t + t^2 1
+        """
+        return fitting_divisor(self.chains().boundary(2), k)
 
     def cyclic_cover(self, n: int) -> CyclicCover:
         """The unbranched n-fold cyclic cover: this cover divided by t^n.
