@@ -178,12 +178,19 @@ def _lab(options: Sequence[str]) -> int:
 
 def _dossier(line: str, folder: str) -> int:
     from kt_widgets.diagrams.diagram import Diagram
-    from kt_widgets.figures.dossier import dossier
+    from kt_widgets.figures.dossier_folder import dossier
 
     written = dossier(Diagram.parse(line), folder)
     for path in written:
         print(path)
     return 0
+
+
+def _said(error: Exception) -> str:
+    """An error in words; one of the system without its number, its file first."""
+    if isinstance(error, OSError) and error.filename and error.strerror:
+        return f"{error.filename}: {error.strerror}"
+    return str(error)
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -202,9 +209,11 @@ def main(arguments: Sequence[str] | None = None) -> int:
             return _lab(others)
         if others:
             parser.error(f"unknown option {others[0]}")
+        if not parsed.out.strip():
+            parser.error("--out names no folder")
         return _dossier(" ".join(parsed.line), parsed.out)
     except (KtError, OSError) as error:
-        print(f"kt-widgets: {' '.join(str(error).split())}", file=sys.stderr)
+        print(f"kt-widgets: {' '.join(_said(error).split())}", file=sys.stderr)
         return BAD_INPUT
     except KeyboardInterrupt:
         return 130

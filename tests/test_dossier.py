@@ -21,7 +21,7 @@ from kt_widgets import verify as verifier
 from kt_widgets.diagrams.diagram import Diagram
 from kt_widgets.errors import CertificateError, KtError, LimitError
 from kt_widgets.exchange import from_json
-from kt_widgets.figures.dossier import dossier, page
+from kt_widgets.figures.dossier_folder import dossier, page
 from kt_widgets.figures.evidence import Evidence
 from kt_widgets.figures.typeset import latex_document
 
@@ -282,3 +282,10 @@ def test_data_files_are_laid_out_for_reading(tmp_path):
     lines = text.splitlines()
     assert len(lines) > 50
     assert max(map(len, lines)) < 140
+
+
+def test_only_a_diagram_has_a_dossier(tmp_path):
+    for wrong in ("braid 1 1 1", Diagram.from_braid([1, 1, 1]).cover(), None):
+        with pytest.raises(KtError, match="is not a diagram; accepted: a Diagram"):
+            dossier(wrong, tmp_path / "out")
+    assert not (tmp_path / "out").exists()

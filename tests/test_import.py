@@ -2,6 +2,7 @@
 
 import subprocess
 import sys
+from importlib.util import find_spec
 
 import pytest
 
@@ -34,6 +35,12 @@ def test_the_exact_chain_draws_and_graphs_nothing() -> None:
 @pytest.mark.parametrize("name", kt.__all__)
 def test_every_public_name_loads(name: str) -> None:
     assert getattr(kt, name) is not None
+
+
+@pytest.mark.parametrize("name", kt.figures.__all__)
+def test_no_file_of_figures_has_the_name_of_a_figure(name: str) -> None:
+    # Importing such a file would put the module in the function's place.
+    assert find_spec(f"kt_widgets.figures.{name}") is None
 
 
 def test_unknown_names_are_refused() -> None:

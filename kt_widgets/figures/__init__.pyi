@@ -1,6 +1,6 @@
 from .cover_figure import cover
 from .diagram_figure import diagram
-from .dossier import dossier
+from .dossier_folder import dossier
 from .drawing import Drawing
 from .explain_figure import explain
 

@@ -8,7 +8,7 @@ from typing import Any
 import pytest
 
 from kt_widgets.diagrams.diagram import Diagram
-from kt_widgets.figures.dossier import dossier
+from kt_widgets.figures.dossier_folder import dossier
 
 pytestmark = pytest.mark.browser
 

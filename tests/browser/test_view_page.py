@@ -9,6 +9,7 @@ from typing import Any
 
 import pytest
 
+from kt_widgets.covers.cover import Cover
 from kt_widgets.diagrams.diagram import Diagram
 from kt_widgets.figures import bodies
 from kt_widgets.figures.cover_figure import cover_scene
@@ -16,6 +17,7 @@ from kt_widgets.figures.diagram_figure import diagram
 from kt_widgets.figures.drawing import Drawing
 from kt_widgets.figures.links import links
 from kt_widgets.figures.steps import steps
+from kt_widgets.groups.presentations import Presentation
 
 pytestmark = pytest.mark.browser
 
@@ -183,3 +185,37 @@ def test_text_can_be_selected(page: Any) -> None:
     line = page.locator("#one ol.kt-words li").first
     line.evaluate("node => getSelection().selectAllChildren(node)")
     assert "⁻¹" in page.evaluate("getSelection().toString()")
+
+
+def test_an_entry_that_is_zero_has_its_name_in_every_view(page: Any) -> None:
+    # The words stand in another view than the matrix, and nothing is linked to this entry.
+    page.locator("#one td[data-place='entry:2:3:2']").hover()
+    assert page.locator("#one [data-says]").inner_text() == "entry (c, r2) of ∂2"
+
+
+def test_the_entry_in_focus_is_legible_in_both_themes(page: Any) -> None:
+    # Dark letters on the pale mark, whatever the theme and whether the entry's letter is being read.
+    for scheme in ("light", "dark"):
+        page.emulate_media(color_scheme=scheme)
+        entry = page.locator("#one td[data-place='entry:2:1:1']")
+        entry.hover()
+        page.locator("#one input[type=range]").focus()
+        page.keyboard.press("Home")
+        page.keyboard.press("ArrowRight")
+        page.keyboard.press("ArrowRight")
+        entry.hover()
+        assert entry.evaluate("cell => getComputedStyle(cell).color") == "rgb(27, 27, 31)"
+
+
+def test_a_narrow_strip_is_not_blown_up(page: Any) -> None:
+    x = Cover(Presentation.parse("< t, x | t x t^-1 = x^2 >"))
+    strip = Drawing(cover_scene(x, [1]))
+    body = bodies.picture(strip, "cover", traces=True)
+    width = page.evaluate(
+        """(body) => {
+            document.querySelector("#one .kt-view").innerHTML = body;
+            return document.querySelector("#one svg").getBoundingClientRect().width;
+        }""",
+        body,
+    )
+    assert abs(width - strip.scene.width * 96 / 72) < 1

@@ -59,9 +59,11 @@ function indexWords(place, links) {
     case "relator": return [`r${at[0]}`, ""];
     case "letter": return [at[1], ` of r${at[0]}`];
     case "entry": {
-      const generator = (links[place] ?? []).find((p) => p.startsWith("generator:"))?.split(":")[1];
-      if (at[0] === "1") return [`(e, ${generator ?? at[2]})`, " of ∂1"];
-      return [`(${generator ?? `row ${at[1]}`}, r${at[2]})`, " of ∂2"];
+      // An entry of ∂2 that is 0 belongs to nothing, but each row has an entry of ∂1.
+      const row = at[0] === "1" ? at[2] : at[1];
+      const of = links[`entry:1:1:${row}`] ?? [];
+      const generator = of.find((p) => p.startsWith("generator:"))?.split(":")[1] ?? `row ${row}`;
+      return at[0] === "1" ? [`(e, ${generator})`, " of ∂1"] : [`(${generator}, r${at[2]})`, " of ∂2"];
     }
     default: return [at.join(", "), ""];
   }

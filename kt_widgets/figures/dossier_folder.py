@@ -66,7 +66,8 @@ def dossier(d: Diagram, out: str | os.PathLike[str]) -> tuple[Path, ...]:
     Raises
     ------
     KtError
-        If `out` is a file, or holds a file of one of these names that is not from a dossier.
+        If `d` is no diagram, or `out` is a file, or holds a file of one of these names that is not from a
+        dossier.
     LimitError
         If the diagram is too large for a dossier.
     OSError
@@ -80,6 +81,10 @@ def dossier(d: Diagram, out: str | os.PathLike[str]) -> tuple[Path, ...]:
     >>> [path.name for path in written][:3]
     ['dossier.html', 'dossier.json', 'verify.py']
     """
+    if not isinstance(d, Diagram):
+        raise KtError(
+            f"an object of type {type(d).__name__} is not a diagram", accepted="a Diagram, see Diagram.parse"
+        )
     folder = Path(out)
     _check_folder(folder)
     # Everything is made before anything is written, so that an error leaves the folder as it was.
@@ -290,7 +295,9 @@ def _homology(x: Cover) -> str:
         for fact in bodies.facts(x, ring):
             note = "" if fact.note in noted else f" <small>{escape(fact.note)}</small>"
             noted.add(fact.note)
-            rows += f"<dt>{escape(fact.name)}</dt><dd>{bodies.maths(fact.value)}{note}</dd>"
+            rows += (
+                f"<dt>{bodies.maths(fact.name, italic=False)}</dt><dd>{bodies.maths(fact.value)}{note}</dd>"
+            )
         head = f"<h3>over {bodies.maths(bodies.ring_text(ring))}</h3>"
         parts.append(f'<section>{head}<dl class="kt-facts kt-math">{rows}</dl></section>')
     return f'<div class="rings">{"".join(parts)}</div>'
