@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from math import comb
 from operator import index
-from typing import Any, TypeAlias
+from typing import Any, SupportsIndex, TypeAlias
 
 from kt_widgets.algebra.elimination import Elimination, Transforms, eliminate, spare_columns
 from kt_widgets.algebra.ideals import (
@@ -22,6 +22,7 @@ from kt_widgets.algebra.laurent import LaurentPolynomial, gcd_of, subtract_produ
 from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.errors import AlgebraError, CertificateError, LimitError
 from kt_widgets.text.portable import Portable
+from kt_widgets.text.printing import integer_text
 
 __all__ = [
     "MAX_MINORS",
@@ -88,8 +89,9 @@ def minors(core: LaurentMatrix, size: int) -> Iterator[tuple[_Place, LaurentPoly
 
 def _core(matrix: LaurentMatrix, k: int) -> tuple[Elimination, int]:
     """The elimination of a presentation matrix, and the size of the core's minors that generate Fitt_k."""
-    if k < 0:
-        raise AlgebraError(f"there is no Fitting ideal number {k}", accepted="0, 1, 2, ...")
+    if not isinstance(k, SupportsIndex) or index(k) < 0:
+        said = integer_text(k) if isinstance(k, int) else repr(k)
+        raise AlgebraError(f"there is no Fitting ideal number {said}", accepted="0, 1, 2, ...")
     elimination = eliminate(matrix)
     return elimination, max(elimination.core.shape[0] - k, 0)
 

@@ -7,6 +7,7 @@ from fractions import Fraction
 from functools import reduce
 from math import gcd as integer_gcd
 from math import lcm
+from operator import index
 from typing import Any, TypeAlias
 
 from kt_widgets.algebra.flint_rings import FlintPolynomial, Ring, RingName, ring
@@ -15,7 +16,7 @@ from kt_widgets.text.parsing import parse_polynomial
 from kt_widgets.text.portable import Portable
 from kt_widgets.text.printing import Style, integer_text, number_text, polynomial_text
 
-__all__ = ["MAX_BITS", "MAX_SPAN", "LaurentPolynomial", "Scalar", "gcd_of", "subtract_product"]
+__all__ = ["MAX_BITS", "MAX_POWER", "MAX_SPAN", "LaurentPolynomial", "Scalar", "gcd_of", "subtract_product"]
 
 Scalar: TypeAlias = int | Fraction
 """Python numbers that coerce to constants."""
@@ -25,6 +26,10 @@ MAX_SPAN = 10_000_000
 
 MAX_BITS = 100_000_000
 """Largest result, by a bound for its number of bits, that powers and values at numbers may have."""
+
+
+MAX_POWER = 2**62
+"""Largest power of a polynomial, however small the result."""
 
 
 class LaurentPolynomial(Portable, kind="polynomial"):
@@ -71,6 +76,10 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         self, coefficients: Sequence[Scalar] | str = (), lowest: int = 0, over: RingName = "Z"
     ) -> None:
         base = ring(over)
+        try:
+            lowest = index(lowest)
+        except TypeError:
+            raise AlgebraError(f"the lowest exponent is {lowest!r}", accepted="an integer") from None
         if isinstance(coefficients, str):
             parsed = LaurentPolynomial.parse(coefficients, over)
             coefficients, lowest = parsed.coefficients, parsed._low + lowest
@@ -316,6 +325,8 @@ class LaurentPolynomial(Portable, kind="polynomial"):
                 )
             return self.inverse() ** -exponent
         span = self.span()
+        if exponent > MAX_POWER:
+            raise LimitError(f"the power {integer_text(exponent)}", accepted=f"at most {MAX_POWER}")
         if self.over in ("Z", "Q"):
             height = max(map(_height, self.coefficients), default=1) + span.bit_length()
             _check_bits((exponent * span + 1) * exponent * (height - 1))
@@ -694,7 +705,9 @@ def _trimmed(low: int, poly: FlintPolynomial, base: Ring) -> LaurentPolynomial:
 
 def _check_span(span: int) -> None:
     if span > MAX_SPAN:
-        raise LimitError(f"exponents {span} apart in one polynomial", accepted=f"at most {MAX_SPAN}")
+        raise LimitError(
+            f"exponents {integer_text(span)} apart in one polynomial", accepted=f"at most {MAX_SPAN}"
+        )
 
 
 def _height(value: Scalar) -> int:
@@ -703,7 +716,9 @@ def _height(value: Scalar) -> int:
 
 def _check_bits(bits: int) -> None:
     if bits > MAX_BITS:
-        raise LimitError(f"the result may have {bits} bits", accepted=f"results of at most {MAX_BITS} bits")
+        raise LimitError(
+            f"the result may have {integer_text(bits)} bits", accepted=f"results of at most {MAX_BITS} bits"
+        )
 
 
 def _unit_text(base: Ring) -> str:

@@ -21,7 +21,7 @@ from kt_widgets.groups.presentations import Presentation
 from kt_widgets.groups.words import Word
 from kt_widgets.places import Place
 from kt_widgets.text.portable import Portable
-from kt_widgets.text.printing import MAX_LATEX_ENTRIES
+from kt_widgets.text.printing import MAX_LATEX_ENTRIES, integer_text
 
 __all__ = ["MAX_WEIGHT", "MAX_WINDOW", "Cover"]
 
@@ -314,7 +314,8 @@ def _check_weights(presentation: Presentation, weights: Mapping[str, int]) -> No
             raise AlgebraError(f"the weight of {name} is {weight!r}", accepted="an integer")
         if abs(weight) > MAX_WEIGHT:
             raise LimitError(
-                f"the weight of {name} is {weight}", accepted=f"at most {MAX_WEIGHT} in absolute value"
+                f"the weight of {name} is {integer_text(weight)}",
+                accepted=f"at most {MAX_WEIGHT} in absolute value",
             )
     for name in presentation.generators:
         if name not in weights:

@@ -28,16 +28,23 @@ MAX_CROSSINGS = 100_000
 MAX_CIRCLES = 10_000
 """A diagram has at most this many crossingless components, a braid at most this many strands."""
 
+MAX_NUMBER = 10**12
+"""Numbers in a code are at most this large, up to sign."""
+
 
 def whole(value: object, where: str) -> int:
     """The value as an int; floats, bools and strings are refused."""
-    if type(value) is int:
-        return value
     if not isinstance(value, bool):
         try:
-            return operator.index(value)  # type: ignore[arg-type]
+            number = operator.index(value)  # type: ignore[arg-type]
         except TypeError:
             pass
+        else:
+            if abs(number) > MAX_NUMBER:
+                raise LimitError(
+                    f"a number of {number.bit_length()} bits", where=where, accepted=f"at most {MAX_NUMBER}"
+                )
+            return number
     raise DiagramError(
         f"{value!r} is not a whole number", where=where, accepted="whole numbers such as 3 or -2"
     )

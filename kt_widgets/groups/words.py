@@ -69,6 +69,8 @@ class Word(Portable, kind="word"):
     letters: tuple[Letter, ...] = ()
 
     def __post_init__(self) -> None:
+        if isinstance(self.letters, str):
+            raise ParseError("a text is no tuple of letters", accepted='Word.parse("a b^-1")')
         letters = tuple((check_name(name), sign) for name, sign in self.letters)
         for name, sign in letters:
             if sign.__class__ is not int or sign not in (1, -1):

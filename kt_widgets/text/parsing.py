@@ -119,6 +119,8 @@ def _parser() -> Any:
 
 
 def _check_text(text: str, example: str) -> None:
+    if not isinstance(text, str):
+        raise ParseError(f"a value of type {type(text).__name__} is no text", accepted=example)
     if len(text) > MAX_TEXT:
         raise LimitError(f"the text has {len(text)} characters", accepted=f"at most {MAX_TEXT}")
     if not text.strip():
@@ -543,6 +545,7 @@ def parse_matrix(text: str) -> list[list[Terms]]:
     accepted: rows of one length
     """
     example = "a matrix such as [[1, t], [0, 1 - t]]"
+    _check_text(text, example)
     inner = text.strip()
     if inner and not inner.startswith("[") and "\\begin" not in inner:
         # A new line sets off rows; positions stay what they are.

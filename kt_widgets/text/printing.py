@@ -41,10 +41,10 @@ def _power(base: str, exponent: int, style: Style) -> str:
     if exponent == 1:
         return base
     if style == "unicode":
-        return base + str(exponent).translate(_SUPERSCRIPTS)
+        return base + integer_text(exponent).translate(_SUPERSCRIPTS)
     if style == "latex" and not 0 <= exponent <= 9:
-        return f"{base}^{{{exponent}}}"
-    return f"{base}^{exponent}"
+        return f"{base}^{{{integer_text(exponent)}}}"
+    return f"{base}^{integer_text(exponent)}"
 
 
 _SHORT = 2_000  # bits; Python may be set to refuse to print from 640 digits on, and does from 4300 on

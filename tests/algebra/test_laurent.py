@@ -321,3 +321,12 @@ def test_a_refused_coefficient_has_its_place():
     with pytest.raises(AlgebraError, match=r"^3/4 is no coefficient of Z\[t,1/t\]") as refused:
         LaurentPolynomial.parse("t^-1 + 3/4 t^2")
     assert refused.value.where == "the coefficient of t^2"
+
+
+def test_exponents_that_are_none_are_refused():
+    with pytest.raises(AlgebraError, match=r"the lowest exponent is 1\.5"):
+        LaurentPolynomial([1], 1.5)
+    with pytest.raises(LimitError, match="the power 1000"):
+        LaurentPolynomial.monomial(1) ** 10**5000
+    with pytest.raises(LimitError, match="exponents 1000"):
+        LaurentPolynomial.monomial(10**5000) + 1

@@ -228,3 +228,12 @@ def test_simplification_keeps_the_cover(p):
     assert all(image.weight(y.weights) == x.weights[name] for name, image in log.images.items())
     for k in range(4):
         assert x.alexander_ideal(k) == y.alexander_ideal(k)
+
+
+def test_ideals_and_weights_refuse_strange_numbers():
+    x = Cover(Presentation.parse("< a, b | a b a = b a b >"))
+    for k in (1.5, "2", -1, -(10**5000)):
+        with pytest.raises(AlgebraError, match="there is no Fitting ideal number"):
+            x.alexander_ideal(k)
+    with pytest.raises(LimitError, match="the weight of a is 1000"):
+        Cover(x.presentation, {"a": 10**5000, "b": 10**5000})

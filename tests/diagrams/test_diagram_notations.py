@@ -418,3 +418,15 @@ def test_random_damage_never_gives_a_foreign_error() -> None:
         except KtError:
             continue
         assert Diagram.parse(str(d)) == d
+
+
+def test_numbers_too_long_to_print_are_refused():
+    # Python refuses str() of integers with more than 4300 digits: the message must not hold them.
+    for make in (
+        lambda: Diagram.from_braid([10**5000]),
+        lambda: Diagram.from_gauss([[10**5000, -1]], [1]),
+        lambda: Diagram([], circles=10**5000),
+        lambda: Diagram.from_braid([1]).longitude(10**5000),
+    ):
+        with pytest.raises(LimitError, match="a number of 16610 bits"):
+            make()

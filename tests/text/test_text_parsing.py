@@ -406,3 +406,11 @@ def test_large_matrices_are_told_apart():
 
 def test_wide_matrices_need_an_array_in_latex():
     assert matrix_text([["1"] * 11], "latex").startswith(r"\left(\begin{array}{ccccccccccc} 1 & 1")
+
+
+@pytest.mark.parametrize(
+    "parse", [parse_word, parse_presentation, parse_polynomial, parse_polynomial_list, parse_matrix]
+)
+def test_what_is_no_text_is_refused(parse):
+    with pytest.raises(ParseError, match="a value of type bytes is no text"):
+        parse(b"1")
