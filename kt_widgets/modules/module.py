@@ -190,6 +190,33 @@ class Module(Portable, kind="module"):
             matrix = LaurentMatrix(matrix, over)
         return cls(matrix if over is None else matrix.change_ring(over))
 
+    @classmethod
+    def from_seifert_matrix(cls, matrix: LaurentMatrix | str | Sequence[Sequence[Entry]]) -> Module:
+        """The cokernel of t V - V^T: H_1 of the infinite cyclic cover of a link with the Seifert matrix V.
+
+        V(a, b) is lk(a, b pushed to the side that a positive meridian reaches), on a connected surface; t
+        comes from all meridians.
+
+        Raises
+        ------
+        AlgebraError
+            If V is not square, or an entry is no integer.
+
+        Examples
+        --------
+        >>> print(Module.from_seifert_matrix([[-1, 0], [1, -1]]).order())
+        1 - t + t^2
+        """
+        V = cls.from_matrix(matrix, "Z").relations
+        if V.shape[0] != V.shape[1]:
+            raise AlgebraError(f"a Seifert matrix of shape {V.shape}", accepted="a square matrix")
+        for i, j, f in V.entries():
+            if f.span() or f.lowest:
+                raise AlgebraError(
+                    f"{f} is no integer", where=f"entry ({i + 1}, {j + 1})", accepted="integers"
+                )
+        return cls(V * LaurentPolynomial.monomial(1) - V.transpose(), title="H_1")
+
     @property
     def ring(self) -> RingName:
         """The ring of coefficients: "Z", "Q" or a prime."""

@@ -1,0 +1,1 @@
+"""What is read off a diagram, a module or a Seifert matrix."""
