@@ -12,6 +12,7 @@ PACKAGES = (
     "python-flint",
     "lark",
     "networkx",
+    "numba",
     "numpy",
     "scipy",
     "sympy",

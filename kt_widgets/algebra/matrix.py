@@ -6,9 +6,11 @@ from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from itertools import chain
 from typing import Any, TypeAlias
 
+from kt_widgets.algebra.determinants import determinant
+from kt_widgets.algebra.evaluation import Reciprocal
 from kt_widgets.algebra.flint_rings import Ring, RingName, ring
-from kt_widgets.algebra.laurent import LaurentPolynomial, Scalar, subtract_product
-from kt_widgets.algebra.sparse import Row, eliminate_units, fraction_free, permutation_sign
+from kt_widgets.algebra.laurent import LaurentPolynomial, Scalar, integer_from_data, subtract_product
+from kt_widgets.algebra.sparse import Row, eliminate_units, fraction_free
 from kt_widgets.errors import AlgebraError, LimitError
 from kt_widgets.text.parsing import parse_matrix
 from kt_widgets.text.portable import Portable
@@ -368,10 +370,10 @@ class LaurentMatrix(Portable, kind="matrix"):
         for j in columns:
             if not 0 <= j < self._shape[1]:
                 raise IndexError(f"no column {j} in a matrix of shape {self._shape}")
-        picked = (
-            {new: f for new, j in enumerate(columns) if (f := row.get(j)) is not None}
-            for row in (self._rows[i] for i in rows)
-        )
+        places: dict[int, list[int]] = {}
+        for new, j in enumerate(columns):
+            places.setdefault(j, []).append(new)
+        picked = ({new: f for j, f in self._rows[i].items() for new in places.get(j, ())} for i in rows)
         return self._trusted(picked, self.over, (len(rows), len(columns)))
 
     def delete(self, *, row: int | None = None, column: int | None = None) -> LaurentMatrix:
@@ -392,8 +394,13 @@ class LaurentMatrix(Portable, kind="matrix"):
 
     # Determinant and rank
 
-    def determinant(self) -> LaurentPolynomial:
-        """The determinant: unit pivots first, then fraction-free elimination of what is left.
+    def determinant(self, symmetry: Callable[[], Reciprocal] | None = None) -> LaurentPolynomial:
+        """The determinant: unit pivots first, then fraction-free elimination or values at roots of unity.
+
+        Parameters
+        ----------
+        symmetry : function, optional
+            Gives what a theorem says of this determinant; called only if it is large.
 
         Raises
         ------
@@ -412,22 +419,7 @@ class LaurentMatrix(Portable, kind="matrix"):
             raise AlgebraError(
                 f"a {size} x {self._shape[1]} matrix has no determinant", accepted="a square matrix"
             )
-        rows = self.sparse_rows()
-        pivots = eliminate_units(rows)
-        used, met = {p.row for p in pivots}, {p.column for p in pivots}
-        core_rows = [i for i in range(size) if i not in used]
-        core_columns = [j for j in range(size) if j not in met]
-        core = fraction_free([rows[i] for i in core_rows], core_columns, self._base)
-        if core.rank < len(core_rows):
-            return LaurentPolynomial((), 0, self.over)
-        images = [0] * size
-        product = core.minor
-        for pivot in pivots:
-            images[pivot.row] = pivot.column
-            product = product * pivot.unit
-        for i, j in zip(core.rows, core.columns, strict=True):
-            images[core_rows[i]] = j
-        return product if permutation_sign(images) == 1 else -product
+        return determinant(self._rows, self._base, symmetry)
 
     def rank(self) -> int:
         """The rank over the field of fractions.
@@ -482,8 +474,11 @@ class LaurentMatrix(Portable, kind="matrix"):
     @classmethod
     def from_data(cls, data: Any) -> LaurentMatrix:
         """Read `to_data` back."""
-        rows, columns = data["shape"]
-        entries = {(i, j): LaurentPolynomial.from_data(f) for i, j, f in data["entries"]}
+        rows, columns = map(integer_from_data, data["shape"])
+        entries = {
+            (integer_from_data(i), integer_from_data(j)): LaurentPolynomial.from_data(f)
+            for i, j, f in data["entries"]
+        }
         if len(entries) != len(data["entries"]) or not all(entries.values()):
             raise AlgebraError("an entry is given twice, or is 0", accepted="each nonzero entry once")
         return cls.from_entries(entries, (rows, columns), data["over"])

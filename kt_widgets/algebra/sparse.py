@@ -18,6 +18,7 @@ __all__ = [
     "Pivot",
     "Row",
     "Rows",
+    "Thrift",
     "eliminate_units",
     "fraction_free",
     "kernel_vector",
@@ -44,8 +45,17 @@ class Pivot(NamedTuple):
     beside: Row
 
 
-def eliminate_units(rows: Rows) -> list[Pivot]:
+class Thrift(NamedTuple):
+    """When `eliminate_units` stops early: the most fill of a pivot, and the longest span it may lead to."""
+
+    fill: int
+    span: int
+
+
+def eliminate_units(rows: Rows, thrift: Thrift | None = None) -> list[Pivot]:
     """Take out every unit, cheapest fill first; afterwards `rows` has no unit and its pivot rows are empty.
+
+    With `thrift` only units that leave the rest sparse and its entries short are taken.
 
     The cost of a pivot is (entries beside it) * (entries below it) (H. M. Markowitz, The elimination form of
     the inverse and its application to linear programming, Management Sci. 3 (1957)); ties go to the first
@@ -80,6 +90,8 @@ def eliminate_units(rows: Rows) -> list[Pivot]:
         if current > cost:
             heappush(queue, (current, i, j))
             continue
+        if thrift and (cost > thrift.fill or _predicted_span(rows, columns[j], i, j) > thrift.span):
+            continue
         del row[j]
         rows[i] = {}
         for c in row:
@@ -110,6 +122,12 @@ def eliminate_units(rows: Rows) -> list[Pivot]:
                     heappush(queue, (width * (len(columns[c]) - 1), k, c))
         pivots.append(Pivot(i, j, entry, tuple(below), row))
     return pivots
+
+
+def _predicted_span(rows: Rows, column: set[int], i: int, j: int) -> int:
+    """A bound for the spans of the products that the pivot in row i and column j makes."""
+    row = rows[i].values()
+    return max(f.highest for f in row) - min(f.lowest for f in row) + max(rows[k][j].span() for k in column)
 
 
 def subtract_line(row: Row, factor: LaurentPolynomial, other: Row) -> None:

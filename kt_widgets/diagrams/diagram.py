@@ -7,9 +7,15 @@ from dataclasses import dataclass, field
 from functools import cached_property
 from typing import Any
 
+from kt_widgets.algebra.evaluation import Reciprocal
 from kt_widgets.algebra.laurent import LaurentPolynomial
 from kt_widgets.covers.cover import Cover
 from kt_widgets.diagrams.braid import read_braid
+from kt_widgets.diagrams.checkerboard import (
+    checkerboard_edges,
+    seifert_circles,
+    spanning_trees_at_most,
+)
 from kt_widgets.diagrams.dowker import dowker_of, read_dowker
 from kt_widgets.diagrams.entries import circle_count, whole
 from kt_widgets.diagrams.gauss import gauss_of, read_gauss
@@ -569,6 +575,10 @@ class Diagram(Portable, kind="diagram"):
         For a knot it is normalised so that Delta(t) = Delta(1/t) and Delta(1) = 1. For a link it is defined
         up to units and has lowest exponent 0 and positive leading coefficient; 0 if the diagram is split.
 
+        Any relator and any generator of a connected diagram's Wirtinger presentation may be left out: the
+        determinant of the rest of boundary(2) is the polynomial up to units (R. H. Crowell, R. H. Fox,
+        Introduction to Knot Theory, ch. VIII).
+
         Examples
         --------
         >>> print(Diagram.from_braid([1, -2, 1, -2]).alexander_polynomial())
@@ -576,8 +586,26 @@ class Diagram(Portable, kind="diagram"):
         >>> print(Diagram.from_braid([1, 1]).alexander_polynomial())
         -1 + t
         """
-        order = self._cover.order()
-        return order.symmetric_form() if len(self.components) == 1 else order
+        if len(self.pieces) > 1:
+            return LaurentPolynomial()
+        if not self.slots:
+            return LaurentPolynomial((1,))
+        boundary = self._cover.chains().boundary(2)
+        if boundary.shape[0] > boundary.shape[1]:
+            # A component that never goes under can be lifted off.
+            return LaurentPolynomial()
+        order = boundary.delete(row=0, column=0).determinant(self._symmetry)
+        return order.symmetric_form() if len(self.components) == 1 else order.normal_form()
+
+    def _symmetry(self) -> Reciprocal:
+        """What the connected diagram tells of its polynomial det(t V - V^T).
+
+        V is a Seifert matrix of the surface with crossings - (Seifert circles) + 1 generators of H_1. The sum
+        of the coefficients' absolute values is at most the number of states, which are the spanning trees of
+        the checkerboard graph (L. H. Kauffman, Formal Knot Theory, 1983).
+        """
+        span = len(self.slots) - seifert_circles(self.slots, self.signs) + 1
+        return Reciprocal(span, spanning_trees_at_most(checkerboard_edges(self.planar_map)))
 
     # new diagrams
 
