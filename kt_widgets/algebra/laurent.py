@@ -16,7 +16,16 @@ from kt_widgets.text.parsing import parse_polynomial
 from kt_widgets.text.portable import Portable
 from kt_widgets.text.printing import Style, integer_text, number_text, polynomial_text
 
-__all__ = ["MAX_BITS", "MAX_POWER", "MAX_SPAN", "LaurentPolynomial", "Scalar", "gcd_of", "subtract_product"]
+__all__ = [
+    "MAX_BITS",
+    "MAX_POWER",
+    "MAX_SPAN",
+    "LaurentPolynomial",
+    "Scalar",
+    "gcd_of",
+    "integer_from_data",
+    "subtract_product",
+]
 
 Scalar: TypeAlias = int | Fraction
 """Python numbers that coerce to constants."""
@@ -656,8 +665,9 @@ class LaurentPolynomial(Portable, kind="polynomial"):
     @classmethod
     def from_data(cls, data: Any) -> LaurentPolynomial:
         """Read `to_data` back; the first and last coefficient must not be 0."""
-        numbers = [_number_from_data(c) for c in data["coefficients"]]
-        f = cls(numbers, _integer_from_data(data["lowest"]), data.get("over", "Z"))
+        over = data.get("over", "Z")
+        numbers = [_number_from_data(c, over) for c in data["coefficients"]]
+        f = cls(numbers, integer_from_data(data["lowest"]), over)
         if len(f.coefficients) != len(numbers) or f._low != data["lowest"]:
             raise AlgebraError(
                 "the polynomial is not trimmed", accepted="nonzero first and last coefficients"
@@ -665,11 +675,18 @@ class LaurentPolynomial(Portable, kind="polynomial"):
         return f
 
 
-def _number_from_data(value: object) -> Scalar:
-    return Fraction(value) if isinstance(value, str) else _integer_from_data(value)
+def _number_from_data(value: object, over: RingName) -> Scalar:
+    if not isinstance(value, str):
+        return integer_from_data(value)
+    fraction = Fraction(value)
+    if over != "Q" or fraction.denominator == 1 or number_text(fraction) != value:
+        accepted = 'an integer, or over "Q" a text such as "-1/2" in lowest terms'
+        raise AlgebraError(f"the coefficient {value!r} is not in its one form", accepted=accepted)
+    return fraction
 
 
-def _integer_from_data(value: object) -> int:
+def integer_from_data(value: object) -> int:
+    """An integer of JSON data; floats and truth values are none."""
     if type(value) is not int:
         raise AlgebraError(f"{value!r} is no integer", accepted="an integer")
     return value

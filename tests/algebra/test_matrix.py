@@ -236,3 +236,21 @@ def test_a_large_matrix_is_not_typeset():
     assert LaurentMatrix.zero(30, 30)._repr_latex_() is None
     assert "30 x 30" in repr(LaurentMatrix.zero(30, 30))
     assert "pmatrix" in LaurentMatrix([[1]])._repr_latex_()
+
+
+@pytest.mark.parametrize("place", [1.5, True, "1", None])
+def test_data_with_places_that_are_no_integers_are_refused(place):
+    data = LaurentMatrix([[0, 2], [3, 4]]).to_data()
+    data["entries"][0][1] = place
+    with pytest.raises(AlgebraError, match="is no integer"):
+        LaurentMatrix.from_data(data)
+
+
+@pytest.mark.parametrize(
+    ("number", "over"), [("1", "Z"), ("2/4", "Q"), ("3/1", "Q"), (" 1/2", "Q"), ("1/2", 5)]
+)
+def test_data_with_coefficients_in_another_form_are_refused(number, over):
+    data = LaurentMatrix([[1]], over).to_data()
+    data["entries"][0][2]["coefficients"] = [number]
+    with pytest.raises(AlgebraError, match="not in its one form"):
+        LaurentMatrix.from_data(data)
