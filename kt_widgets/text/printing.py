@@ -21,6 +21,7 @@ __all__ = [
     "name_text",
     "number_text",
     "polynomial_text",
+    "power_text",
     "presentation_text",
     "word_text",
 ]
@@ -37,7 +38,14 @@ _SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 _SUBSCRIPTS = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
 
 
-def _power(base: str, exponent: int, style: Style) -> str:
+def power_text(base: str, exponent: int, style: Style = "plain") -> str:
+    """Print a power of something printed already.
+
+    Examples
+    --------
+    >>> power_text("(a b)", -2), power_text("t", 10, "latex"), power_text("t", 1)
+    ('(a b)^-2', 't^{10}', 't')
+    """
     if exponent == 1:
         return base
     if style == "unicode":
@@ -110,10 +118,10 @@ def polynomial_text(terms: Mapping[int, int | Fraction], style: Style = "plain",
         if exponent == 0:
             body = number_text(size, style)
         elif size == 1:
-            body = _power(variable, exponent, style)
+            body = power_text(variable, exponent, style)
         else:
             gap = " " if size.denominator != 1 and style != "latex" else ""
-            body = number_text(size, style) + gap + _power(variable, exponent, style)
+            body = number_text(size, style) + gap + power_text(variable, exponent, style)
         if not pieces:
             pieces.append(minus + body if coefficient < 0 else body)
         else:
@@ -188,7 +196,8 @@ def word_text(letters: Iterable[tuple[str, int]], style: Style = "plain") -> str
     ('x_{1}^{-1}', 'x₁⁻¹', '1')
     """
     runs = (
-        _power(name_text(name, style), sign * len(list(run)), style) for (name, sign), run in groupby(letters)
+        power_text(name_text(name, style), sign * len(list(run)), style)
+        for (name, sign), run in groupby(letters)
     )
     return " ".join(runs) or "1"
 
