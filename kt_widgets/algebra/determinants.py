@@ -22,7 +22,7 @@ __all__ = ["SMALL_CORE", "THRIFT", "determinant"]
 THRIFT = Thrift(fill=6, span=20)
 """Unit pivots beyond this cost more in long entries than values save (measured on closed braids)."""
 
-SMALL_CORE = 40
+SMALL_CORE = 60
 """Up to this many rows left by thrifty elimination, fraction-free elimination is faster than values."""
 
 
