@@ -51,8 +51,9 @@ class Cover(Portable, kind="cover"):
     Raises
     ------
     AlgebraError
-        If a relator has a weight that is not 0, which it names; if a generator has no weight; or if no
-        weights are given and there is no unique surjection: the error lists a basis of the weight maps.
+        If `presentation` is not one; if a relator has a weight that is not 0, which it names; if a generator
+        has no weight; or if no weights are given and there is no unique surjection: the error lists a basis
+        of the weight maps.
     LimitError
         If a weight is beyond `MAX_WEIGHT`.
 
@@ -70,8 +71,19 @@ class Cover(Portable, kind="cover"):
     _weights: tuple[int, ...]
 
     def __init__(self, presentation: Presentation, weights: Mapping[str, int] | None = None) -> None:
+        if not isinstance(presentation, Presentation):
+            raise AlgebraError(
+                f"an object of type {type(presentation).__name__} is not a presentation",
+                accepted="a Presentation, see Presentation.parse; a diagram d has d.cover()",
+            )
         if weights is None:
             weights = _default_weights(presentation)
+        if not isinstance(weights, Mapping):
+            raise AlgebraError(
+                f"weights are given by an object of type {type(weights).__name__}",
+                where="weights",
+                accepted='a weight for each generator by its name, such as {"a": 1, "b": 1}',
+            )
         _check_weights(presentation, weights)
         object.__setattr__(self, "presentation", presentation)
         object.__setattr__(self, "_weights", tuple(weights[name] for name in presentation.generators))
@@ -327,8 +339,8 @@ def _default_weights(presentation: Presentation) -> dict[str, int]:
     listed = "; ".join(", ".join(f"{name}: {w}" for name, w in weights.items()) for weights in basis[:5])
     more = f"; and {len(basis) - 5} more" if len(basis) > 5 else ""
     raise AlgebraError(
-        f"there are many weight maps, with basis {listed}{more}",
-        accepted="weights=, an integer combination of these",
+        f"the weights are not determined; the weight maps have the basis {listed}{more}",
+        accepted="weights that are an integer combination of these",
     )
 
 

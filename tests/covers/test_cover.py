@@ -93,7 +93,7 @@ def test_default_weights():
 def test_default_weights_that_do_not_exist():
     with pytest.raises(AlgebraError, match="finite abelianisation"):
         Cover(Presentation.parse("< a | a^5 >"))
-    with pytest.raises(AlgebraError, match="many weight maps") as caught:
+    with pytest.raises(AlgebraError, match="weights are not determined") as caught:
         Cover(Presentation.parse("< a, b, c | a^2 b >"))
     for weights in Presentation.parse("< a, b, c | a^2 b >").weights():
         assert ", ".join(f"{name}: {w}" for name, w in weights.items()) in caught.value.what
@@ -237,3 +237,17 @@ def test_ideals_and_weights_refuse_strange_numbers():
             x.alexander_ideal(k)
     with pytest.raises(LimitError, match="the weight of a is 1000"):
         Cover(x.presentation, {"a": 10**5000, "b": 10**5000})
+
+
+@pytest.mark.parametrize("wrong", ["< a | >", None, Cover(Presentation.parse("< a | >"))])
+def test_only_a_presentation_has_a_cover(wrong):
+    with pytest.raises(AlgebraError, match="is not a presentation; accepted: a Presentation"):
+        Cover(wrong)
+
+
+@pytest.mark.parametrize("wrong", [1, [1, 1], "a"])
+def test_weights_are_a_mapping(wrong):
+    with pytest.raises(
+        AlgebraError, match=r"\(at weights\); accepted: a weight for each generator by its name"
+    ):
+        Cover(Presentation.parse("< a, b | a b a = b a b >"), wrong)
