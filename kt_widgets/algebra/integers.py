@@ -106,10 +106,6 @@ def _check_integers(matrix: LaurentMatrix, name: str) -> None:
 def _rows(matrix: LaurentMatrix) -> list[list[int]]:
     rows = [[0] * matrix.shape[1] for _ in range(matrix.shape[0])]
     for i, j, f in matrix.entries():
-        if matrix.over != "Z" or f.span() or f.lowest:
-            raise AlgebraError(
-                f"{f} is no integer", where=f"entry ({i + 1}, {j + 1})", accepted="a matrix of integers"
-            )
         rows[i][j] = int(f.coefficients[0])
     return rows
 
@@ -119,7 +115,12 @@ def _matrix(rows: Sequence[Sequence[int]], width: int) -> LaurentMatrix:
     return LaurentMatrix.from_monomials(terms, (len(rows), width))
 
 
-def _check_side(matrix: LaurentMatrix) -> None:
+def _check_input(matrix: LaurentMatrix) -> None:
+    for i, j, f in matrix.entries():
+        if matrix.over != "Z" or f.span() or f.lowest:
+            raise AlgebraError(
+                f"{f} is no integer", where=f"entry ({i + 1}, {j + 1})", accepted="a matrix of integers"
+            )
     if max(matrix.shape) > MAX_INTEGER_SIDE:
         raise LimitError(
             f"an integer matrix of shape {matrix.shape}",
@@ -142,7 +143,7 @@ def integer_factors(matrix: LaurentMatrix) -> tuple[int, ...]:
     >>> integer_factors(LaurentMatrix([[4, 6], [2, 8], [0, 0]]))
     (2, 10, 0)
     """
-    _check_side(matrix)
+    _check_input(matrix)
     core = eliminate(matrix).core
     return _cokernel(smith_diagonal(_rows(core)), core.shape[0])
 
@@ -154,16 +155,26 @@ def _cokernel(diagonal: Sequence[int], generators: int) -> tuple[int, ...]:
 def integer_smith_form(matrix: LaurentMatrix) -> IntegerSmithForm:
     """The Smith normal form of an integer matrix with transforms; the same errors as `integer_factors`.
 
-    Hermite forms of rows and columns in turn, until the matrix is diagonal (R. Kannan, A. Bachem, Polynomial
-    algorithms for computing the Smith and Hermite normal forms of an integer matrix, SIAM J. Comput. 8
-    (1979)); where an entry does not divide the next one, its row is added to that one and the turns go on.
+    Entries 1 and -1 are taken out first. Then Hermite forms of rows and columns in turn, until the matrix is
+    diagonal (R. Kannan, A. Bachem, Polynomial algorithms for computing the Smith and Hermite normal forms of
+    an integer matrix, SIAM J. Comput. 8 (1979)); where an entry does not divide the next one, its row is
+    added to that one and the turns go on.
 
     Examples
     --------
     >>> integer_smith_form(LaurentMatrix([[2, 0, 0], [0, 3, 0]])).diagonal
     (1, 6)
     """
-    _check_side(matrix)
+    _check_input(matrix)
+    elimination = eliminate(matrix)
+    units = len(elimination.pivots)
+    core, inner = _diagonalised(elimination.core)
+    total = inner.after(units) @ elimination.transforms()
+    D = LaurentMatrix.blocks(LaurentMatrix.identity(units), core)
+    return IntegerSmithForm(matrix, D, total.left, total.left_inverse, total.right, total.right_inverse)
+
+
+def _diagonalised(matrix: LaurentMatrix) -> tuple[LaurentMatrix, Transforms]:
     height, width = matrix.shape
     current = _rows(matrix)
     U, V = LaurentMatrix.identity(height), LaurentMatrix.identity(width)
@@ -181,14 +192,8 @@ def integer_smith_form(matrix: LaurentMatrix) -> IntegerSmithForm:
         added = LaurentMatrix.from_entries({(place, place + 1): 1}, (height, height))
         U = (LaurentMatrix.identity(height) + added) @ U
         current, V = _column_turn(current, V)
-    return IntegerSmithForm(
-        matrix,
-        _matrix(current, width),
-        U,
-        _matrix(integer_inverse(_rows(U)), height),
-        V,
-        _matrix(integer_inverse(_rows(V)), width),
-    )
+    U_inverse, V_inverse = (_matrix(integer_inverse(_rows(m)), m.shape[0]) for m in (U, V))
+    return _matrix(current, width), Transforms(U, U_inverse, V, V_inverse)
 
 
 def _column_turn(rows: list[list[int]], V: LaurentMatrix) -> tuple[list[list[int]], LaurentMatrix]:

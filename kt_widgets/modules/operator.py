@@ -246,7 +246,7 @@ def _over_integers(relations: LaurentMatrix) -> Operator:
     keep = [i for i, d in enumerate(group.orders) if d != 1]
     torsion = tuple(group.orders[i] for i in keep)
     t = LaurentPolynomial.monomial(1)
-    T, inverse = (group.action(unit).submatrix(keep, keep) for unit in (t, t.inverse()))
+    T, inverse = (group.action(unit, keep) for unit in (t, t.inverse()))
     A, over_t = first.target, _presentation(T, torsion)
     height, degree = A.shape[0], modulus.span()
     B = group.collapse(height) @ group.smith.U_inverse.submatrix(range(height * degree), keep)
@@ -285,10 +285,12 @@ class _Group:
         terms = ((j, degree * j + k, k, 1) for j in range(count) for k in range(degree))
         return LaurentMatrix.from_monomials(terms, (count, degree * count))
 
-    def action(self, unit: LaurentPolynomial) -> LaurentMatrix:
-        """The matrix of multiplication by a unit, in the coordinates of the Smith form."""
+    def action(self, unit: LaurentPolynomial, keep: list[int]) -> LaurentMatrix:
+        """The matrix of multiplication by a unit, in some of the coordinates of the Smith form."""
         one = LaurentMatrix.identity(self.matrix.shape[0])
-        return self.smith.U @ at_companion(one * unit, self.modulus) @ self.smith.U_inverse
+        every = range(self.smith.D.shape[0])
+        image = self.smith.U.submatrix(keep, every) @ at_companion(one * unit, self.modulus)
+        return image @ self.smith.U_inverse.submatrix(every, keep)
 
     def relations(self, target: LaurentMatrix) -> LaurentMatrix:
         """The X with A X = V, for columns V that are 0 in the cokernel.
