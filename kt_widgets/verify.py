@@ -112,6 +112,9 @@ MAX_MINORS = 2000
 MAX_CORE = 12
 """Most rows of the core: minors of larger ones would take too long to expand."""
 
+MAX_WORK = 50_000_000
+"""Most products of coefficients in one product of matrices, one combination, or all minors of the core."""
+
 Number = int | Fraction
 Poly = dict[int, Number]
 Word = tuple[tuple[str, int], ...]
@@ -142,6 +145,11 @@ def _plus(f: Poly, g: Poly, p: int = 0, factor: Number = 1, shift: int = 0) -> P
     return _kept(total, p)
 
 
+def _check_work(products: int) -> None:
+    if products > MAX_WORK:
+        raise OverflowError(f"{products} products of coefficients, at most {MAX_WORK} are worked out")
+
+
 def _add_product(total: Poly, f: Poly, g: Poly) -> None:
     for e1, c1 in f.items():
         for e2, c2 in g.items():
@@ -150,6 +158,7 @@ def _add_product(total: Poly, f: Poly, g: Poly) -> None:
 
 def _combination(terms: Sequence[tuple[Poly, Poly]]) -> Poly:
     """The sum of the products."""
+    _check_work(sum(len(f) * len(g) for f, g in terms))
     total: Poly = {}
     for f, g in terms:
         _add_product(total, f, g)
@@ -193,6 +202,7 @@ def _product(a: Matrix, b: Matrix, p: int = 0) -> Matrix:
     by_row: dict[int, list[tuple[int, Poly]]] = {}
     for (k, j), g in b.entries.items():
         by_row.setdefault(k, []).append((j, g))
+    _check_work(sum(len(f) * len(g) for (_, k), f in a.entries.items() for _, g in by_row.get(k, ())))
     sums: dict[tuple[int, int], Poly] = {}
     for (i, k), f in a.entries.items():
         for j, g in by_row.get(k, ()):
@@ -842,6 +852,7 @@ class _Minors:
     def __init__(self, matrix: Matrix) -> None:
         self.matrix = matrix
         self.known: dict[Spot, Poly] = {((), ()): {0: 1}}
+        self.work = 0
 
     def value(self, rows: tuple[int, ...], columns: tuple[int, ...]) -> Poly:
         if (rows, columns) not in self.known:
@@ -850,6 +861,8 @@ class _Minors:
                 entry = self.matrix.entries.get((rows[0], column))
                 if entry:
                     smaller = self.value(rows[1:], columns[:i] + columns[i + 1 :])
+                    self.work += len(entry) * len(smaller)
+                    _check_work(self.work)
                     _add_product(total, entry if i % 2 == 0 else _plus({}, entry, 0, -1), smaller)
             self.known[rows, columns] = _kept(total, 0)
         return self.known[rows, columns]

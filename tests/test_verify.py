@@ -332,6 +332,19 @@ def test_what_python_does_not_read_or_a_terminal_print_is_refused(tmp_path, monk
     assert rb"FAILS  subject: subject.line: '1 1 \xe9' is no list of numbers" in printed.getvalue()
 
 
+def test_long_polynomials_are_refused_at_once(trefoil):
+    changed = copy.deepcopy(trefoil)
+    ones = {"lowest": 0, "coefficients": [1] * 5000}
+    places = [[i, j, ones] for i in (1, 2, 3) for j in (1, 2, 3)]
+    changed["data"]["homology"]["kernel"]["entries"] = places
+    changed["data"]["homology"]["kernel_inverse"]["entries"] = places
+    (said, *_) = verifier.verify(signed(changed))
+    assert said == (
+        "homology: cannot be checked (OverflowError: 675000000 products of coefficients, "
+        "at most 50000000 are worked out)"
+    )
+
+
 def test_long_relators_are_refused_at_once(trefoil):
     changed = copy.deepcopy(trefoil)
     changed["data"]["presentation"]["relators"][0] = [["a", 1]] * 100_000
