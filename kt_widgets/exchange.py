@@ -7,12 +7,25 @@ from kt_widgets.covers import chains, cover
 from kt_widgets.diagrams import diagram
 from kt_widgets.figures import evidence
 from kt_widgets.groups import presentations, words
-from kt_widgets.modules import module
+from kt_widgets.modules import comparison, module
 from kt_widgets.text.portable import Portable, read
 
 __all__ = ["ROOMS", "from_json"]
 
-ROOMS = (laurent, matrix, ideals, smith, module, words, presentations, cover, chains, diagram, evidence)
+ROOMS = (
+    laurent,
+    matrix,
+    ideals,
+    smith,
+    module,
+    comparison,
+    words,
+    presentations,
+    cover,
+    chains,
+    diagram,
+    evidence,
+)
 """The files whose classes travel as JSON: importing them makes their kinds known."""
 
 

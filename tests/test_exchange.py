@@ -23,6 +23,8 @@ from kt_widgets.exchange import from_json
 from kt_widgets.figures.evidence import Evidence
 from kt_widgets.groups.presentations import Presentation
 from kt_widgets.groups.words import Word
+from kt_widgets.modules.comparison import compare
+from kt_widgets.modules.module import Module
 
 TREFOIL = Diagram.from_braid([1, 1, 1])
 MATRIX = LaurentMatrix([["t - 2", 0], [0, "2t - 1"]])
@@ -34,6 +36,10 @@ VALUES = [
     Ideal.certificate(["2 - t", "1 - 2t"]),
     fitting_certificate(MATRIX, 1),
     smith_form(MATRIX.change_ring("Q")),
+    compare(Module(MATRIX), Module.from_matrix([["2"]])).witness,
+    Module.from_matrix([["1 - t + t^2"]]).operator(),
+    Module(MATRIX).cyclicity(),
+    TREFOIL.cover().branched_cover(2).certificate(),
     Word.parse("a b^-1 a"),
     Presentation.parse("< a, b | a b a = b a b >"),
     Cover(Presentation.parse("< x, y | x^3 = y^2 >")),
