@@ -9,6 +9,8 @@ from .errors import AlgebraError, CertificateError, DiagramError, KtError, Limit
 from .exchange import from_json
 from .groups.presentations import Presentation
 from .groups.words import Word
+from .invariants.seifert import seifert_matrix
+from .modules.comparison import compare
 from .modules.module import Module
 from .places import Place
 from .versions import show_versions
@@ -34,8 +36,10 @@ __all__ = [
     "Presentation",
     "Word",
     "Workbench",
+    "compare",
     "figures",
     "from_json",
+    "seifert_matrix",
     "show_versions",
     "testing",
     "verify",

@@ -56,6 +56,14 @@ def test_every_value_compiles(tmp_path: Path) -> None:
         c.relative_homology(1),
         kt.Module.from_matrix([["t - 2", "0"], ["0", "2t - 1"]]),
         kt.Module.from_matrix([["2"]]),
+        h.over("Q").operator(),
+        h.cyclicity(),
+        kt.compare(h, h),
+        kt.compare(h.over("Q"), h.over("Q")),
+        kt.compare(h, kt.Module.from_matrix([["2"]])),
+        x.branched_cover(3),
+        x.cyclic_cover(4),
+        h.over("Q").summands()[0],
     ]
     texts = [value._repr_latex_() for value in values]
     assert all(text.startswith("$") for text in texts)
