@@ -536,7 +536,7 @@ def _rail_items(strip: _Strip, rail: float) -> list[Item]:
 
 
 def cover(
-    x: Cover, trace: int | None = 1, lo: int | None = None, hi: int | None = None, preset: str = "paper"
+    x: Cover, trace: int | str | None = 1, lo: int | None = None, hi: int | None = None, preset: str = "paper"
 ) -> Drawing:
     """Draw the infinite cyclic cover as a strip, with the boundary of one lifted 2-cell traced on it.
 
@@ -546,8 +546,8 @@ def cover(
     Parameters
     ----------
     x : Cover
-    trace : int, optional
-        The number (from 1) of the relator whose 2-cell at e is traced; None for none.
+    trace : int or str, optional
+        The relator whose 2-cell at e is traced, by its number from 1 or as "r1"; None for none.
     lo, hi : int, optional
         The powers of t at the ends of the strip; otherwise what the trace needs.
     preset : {"paper", "screen", "talk"}
@@ -566,17 +566,11 @@ def cover(
     >>> [item.role for item in drawing.scene.at("vertex:3")]
     ['dropline', 'rail', 'vertex', 'label']
     """
-    traced = trace if isinstance(x, Cover) and x.presentation.relators else None
-    return Drawing(
-        cover_scene(
-            x,
-            () if traced is None else (traced,),
-            lo,
-            hi,
-            preset,
-            "" if traced is None else _title(x, traced),
-        )
-    )
+    traced: tuple[int, ...] = ()
+    if isinstance(x, Cover) and x.presentation.relators and trace is not None:
+        traced = (x.presentation.relator_number(trace),)
+    title = "".join(_title(x, relator) for relator in traced)
+    return Drawing(cover_scene(x, traced, lo, hi, preset, title))
 
 
 def _title(x: Cover, relator: int) -> str:

@@ -36,7 +36,10 @@ def unexpected(error: Exception) -> str:
 
 @contextmanager
 def reporting(view: View) -> Iterator[None]:
-    """Show an error raised in a callback under the view instead of losing it; clear it if there is none."""
+    """Show an error raised in a callback under the view instead of losing it; clear it if there is none.
+
+    Either way the view has `answered`: the browser waits for it after a line was sent.
+    """
     try:
         yield
     except KtError as error:
@@ -45,6 +48,7 @@ def reporting(view: View) -> Iterator[None]:
         view.error = unexpected(error)
     else:
         view.error = ""
+    view.answered += 1
 
 
 def bundle(
@@ -103,6 +107,7 @@ class View(anywidget.AnyWidget):
     selected = traitlets.Unicode().tag(sync=True)
     step = traitlets.Int(0).tag(sync=True)
     error = traitlets.Unicode().tag(sync=True)
+    answered = traitlets.Int(0).tag(sync=True)
 
     def __init__(self, value: Viewable, **traits: Any) -> None:
         # First of all: observers of traits given here look at it.

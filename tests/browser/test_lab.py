@@ -109,6 +109,7 @@ def test_focus_selection_stepping_and_errors(lab: Any, chromium_page: Any) -> No
     alert.wait_for()
     assert "x" in alert.inner_text()
     assert field.input_value() == "braid 1 -2 x"
+    first.locator(".kt-waiting").wait_for(state="detached")
     assert first.locator("svg").first.inner_html() == before
     field.fill("braid 1 1 1")
     field.press("Enter")

@@ -204,6 +204,11 @@ def test_what_is_no_cover_is_refused(wrong: Any) -> None:
         cover(wrong)
 
 
+def test_a_relator_is_named_by_number_or_by_name() -> None:
+    x = Diagram.from_braid([1, 1, 1]).cover()
+    assert cover(x, trace="r2").scene == cover(x, trace=2).scene
+
+
 def test_an_unknown_relator_is_refused() -> None:
     with pytest.raises(KtError, match="r1"):
         cover(Cover(Presentation.parse(TREFOIL)), trace=2)

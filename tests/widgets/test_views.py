@@ -166,6 +166,16 @@ def test_other_primes_are_worked_out_on_demand() -> None:
     view.close()
 
 
+def test_every_line_sent_is_answered() -> None:
+    bench = Workbench("braid 1 1 1")
+    for count, text in enumerate(["", "   ", "braid 1 -2 1 -2", "braid x"], start=1):
+        bench.line.text = text
+        assert bench.line.answered == count
+    bench.homology.prime = "7"
+    assert bench.homology.answered == 1
+    bench.close()
+
+
 def test_an_unexpected_error_is_shown_too(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.undo()
     view = LineView("braid 1 1 1")

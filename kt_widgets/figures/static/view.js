@@ -5,6 +5,7 @@
 //   body      HTML with inline SVG; every part that can be pointed at carries data-place="kind:index:..."
 //   links     place -> the places that belong to it
 //   focus     the place pointed at, or "";   selected  the place clicked, or ""
+//   answered  counts the answers to what forms have sent
 //   steps     the letters of all relators in order, each with cell, letter, edge, entry, caption, sums;   step  a position
 // What else a body asks for: data-bind="name" shows a value as text, data-set="name" (form or select) sets one,
 // data-when="name=value" shows a part only then, data-stepper is where the stepping goes, data-says where the words
@@ -174,6 +175,7 @@ class View {
     this.listen("selected", () => this.selectionChanged());
     this.listen("steps", () => this.buildSoon());
     this.listen("step", () => this.showStep());
+    this.listen("answered", () => this.root.classList.remove("kt-waiting"));
     this.root.addEventListener("pointerover", (event) => this.pointAt(this.placeAt(event.target)));
     this.root.addEventListener("pointerleave", () => this.pointAt(""));
     this.root.addEventListener("focusin", (event) => this.entered(event.target));
@@ -281,6 +283,8 @@ class View {
       follow(name, () => { if (field.value !== this.get(name)) field.value = this.get(name) ?? ""; });
       node.addEventListener(node.matches("form") ? "submit" : "change", (event) => {
         event.preventDefault();
+        // What a form sends is worked out by the kernel, which may take some seconds.
+        if (node.matches("form") && this.get(name) !== field.value) this.root.classList.add("kt-waiting");
         this.set(name, field.value);
       });
     }
