@@ -9,6 +9,7 @@ from math import comb
 from operator import index
 from typing import Any, SupportsIndex, TypeAlias
 
+from kt_widgets.algebra.determinants import SMALL_CORE
 from kt_widgets.algebra.elimination import Elimination, Transforms, eliminate, spare_columns
 from kt_widgets.algebra.ideals import (
     Combination,
@@ -20,6 +21,7 @@ from kt_widgets.algebra.ideals import (
 )
 from kt_widgets.algebra.laurent import LaurentPolynomial, gcd_of, subtract_product
 from kt_widgets.algebra.matrix import LaurentMatrix
+from kt_widgets.algebra.relations import without_repeated_relations
 from kt_widgets.errors import AlgebraError, CertificateError, LimitError
 from kt_widgets.text.portable import Portable
 from kt_widgets.text.printing import integer_text
@@ -148,6 +150,10 @@ def fitting_divisor(matrix: LaurentMatrix, k: int) -> LaurentPolynomial:
     >>> fitting_divisor(LaurentMatrix([["1 - t", "1 - t^2"]], over="Q"), 0)
     LaurentPolynomial('-1 + t', over='Q')
     """
+    if k == 0 and matrix.over == "Z" and min(matrix.shape) > SMALL_CORE:
+        matrix = without_repeated_relations(matrix)
+        if matrix.shape[0] == matrix.shape[1]:
+            return matrix.determinant().normal_form()
     elimination, size = _core(matrix, k)
     core = _without_spare_columns(elimination.core)
     return gcd_of((minor for _, minor in minors(core, size)), matrix.over)

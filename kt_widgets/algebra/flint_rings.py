@@ -26,6 +26,7 @@ __all__ = [
     "integer_solution",
     "is_prime",
     "prime_determinant",
+    "prime_kernel",
     "prime_product",
     "ring",
     "smith_diagonal",
@@ -380,6 +381,19 @@ def prime_determinant(rows: Sequence[Sequence[int]], p: int) -> int:
     """
     entries = [value for row in rows for value in row]
     return int(nmod_mat(len(rows), len(rows), entries, p).det())
+
+
+def prime_kernel(rows: Sequence[Sequence[int]], columns: int, p: int) -> list[list[int]]:
+    """A basis of the vectors that all rows send to 0 over the field of p elements, in echelon form.
+
+    Examples
+    --------
+    >>> prime_kernel([[1, 2, 3], [2, 4, 6]], 3, 7)
+    [[5, 1, 0], [4, 0, 1]]
+    """
+    entries = [value for row in rows for value in row]
+    basis, nullity = nmod_mat(len(rows), columns, entries, p).nullspace()
+    return [[int(basis[i, k]) for i in range(columns)] for k in range(nullity)]
 
 
 def prime_product(left: Sequence[int], right: Sequence[int], p: int) -> list[int]:
