@@ -6,6 +6,7 @@ from typing import Any
 
 import traitlets
 
+from kt_widgets.errors import KtError
 from kt_widgets.figures import bodies
 from kt_widgets.figures.drawing import Drawing
 from kt_widgets.figures.explain_figure import explain
@@ -54,11 +55,20 @@ class ExplanationView(View):
 
 
 def _entry(subject: Subject, selected: str) -> tuple[str, str] | None:
-    """The generator and the relator of the entry or letter selected, if it is one of boundary(2)."""
+    """The generator and the relator of the entry of boundary(2) or of the letter that is selected, if one is.
+
+    Raises
+    ------
+    KtError
+        If there is no such entry or letter.
+    """
     place = Place.parse(selected)
+    names, words = subject.cover.presentation.generators, subject.cover.presentation.boundary_words
     match place.kind, place.indices:
-        case "entry", (2, int(i), int(r)):
-            return subject.cover.presentation.generators[i - 1], f"r{r}"
-        case "letter", (int(r), int(j)):
-            return subject.cover.presentation.boundary_words[r - 1].letters[j - 1][0], f"r{r}"
+        case "entry", (2, int(i), int(r)) if 1 <= i <= len(names) and 1 <= r <= len(words):
+            return names[i - 1], f"r{r}"
+        case "letter", (int(r), int(j)) if 1 <= r <= len(words) and 1 <= j <= len(words[r - 1]):
+            return words[r - 1].letters[j - 1][0], f"r{r}"
+        case ("entry", (2, *_)) | ("letter", _):
+            raise KtError(f"there is no {selected}", where="selected", accepted="a place shown in the views")
     return None

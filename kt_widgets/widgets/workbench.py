@@ -40,7 +40,7 @@ class Workbench(ipywidgets.Box):  # type: ignore[misc]  # ipywidgets has no type
     subject : Subject
         What is shown: its `cover` and `diagram`.
     selected : str
-        The text form of the place selected, such as "entry:2:1:3", or "".
+        The text form of the place selected, such as "entry:2:1:3", or ""; may be set, too.
 
     Raises
     ------
@@ -124,6 +124,12 @@ class Workbench(ipywidgets.Box):  # type: ignore[misc]  # ipywidgets has no type
 
     def _picked(self, change: Any) -> None:
         self.selected = change["new"]
+
+    @traitlets.observe("selected")
+    def _select(self, change: Any) -> None:
+        # Set in Python; what is picked in the browser has reached all views already.
+        for view in self.views:
+            view.selected = change["new"]
 
     def _lay_out(self, subject: Subject) -> None:
         """Beside the diagram there is room for the relators and narrow matrices."""

@@ -152,6 +152,24 @@ def test_selected_is_observed_and_explained() -> None:
     bench.close()
 
 
+def test_a_place_is_selected_from_python_too() -> None:
+    bench = Workbench("braid 1 1 1")
+    bench.selected = "letter:3:1"
+    assert {view.selected for view in bench.views} == {"letter:3:1"}
+    assert "column r3" in bench.explanation.body
+    bench.close()
+
+
+@pytest.mark.parametrize("place", ["entry:2:9:1", "entry:2:0:1", "entry:2:1:4", "letter:1:5", "letter:0:1"])
+def test_a_place_that_does_not_exist_is_said_so(place: str) -> None:
+    view = ExplanationView("braid 1 1 1")
+    view.selected = place
+    assert view.error == f"there is no {place} (at selected); accepted: a place shown in the views"
+    view.selected = "entry:2:1:1"
+    assert not view.error
+    view.close()
+
+
 def test_other_primes_are_worked_out_on_demand() -> None:
     view = HomologyView("braid 1 -2 1 -2")
     assert "ring=11" not in view.body
