@@ -32,8 +32,9 @@ _OPTIONS = {
     "dowker": ("circles",),
     "planar": ("signs", "circles"),
 }
+_CLOSING = {"(": ")", "[": "]"}
 _TOKEN = re.compile(
-    r"(?P<name>[A-Za-z_]+)|(?P<number>[+-]?[0-9]+)|(?P<sign>[+-])|(?P<mark>[,;/])|(?P<space>\s+)"
+    r"(?P<name>[A-Za-z_]+)|(?P<number>[+-]?[0-9]+)|(?P<sign>[+-])|(?P<mark>[,;/])|(?P<bracket>[\[\]()])|(?P<space>\s+)"
 )
 
 
@@ -54,7 +55,8 @@ class Line:
 def read_line(text: str) -> Line:
     """Read a line such as ``braid 1 -2 1 -2 strands 3`` or ``gauss 1 -2 / -1 2 signs + +``.
 
-    Numbers are separated by spaces or commas, components by ``/``, crossings of a planar code by ``;``.
+    Numbers are separated by spaces or commas, components by ``/``, crossings of a planar code by ``;``. A
+    Python list may follow the name instead: brackets must match, and set components or crossings apart.
 
     Raises
     ------
@@ -67,6 +69,8 @@ def read_line(text: str) -> Line:
     --------
     >>> read_line("gauss 1 -2 / -1 2 signs + +")
     Line(notation='gauss', groups=[[1, -2], [-1, 2]], options={'signs': [1, 1]})
+    >>> read_line("planar [(1, 4, 2, 5), (5, 2, 6, 3), (3, 6, 4, 1)]").groups
+    [[1, 4, 2, 5], [5, 2, 6, 3], [3, 6, 4, 1]]
     """
     if not isinstance(text, str):
         raise ParseError(f"a {type(text).__name__} is not a line of text", accepted=_examples())
@@ -93,9 +97,21 @@ def _read_body(text: str, notation: str, tokens: list[tuple[str, str, int]]) -> 
     line = Line(notation, [[]])
     target = line.groups[0]
     option = ""
+    apart = False
+    awaited: list[str] = []
     for kind, word, at in tokens:
         problem, accepted = "", NOTATIONS[notation]
-        if kind == "number":
+        if kind == "bracket":
+            apart = bool(separator) and not option
+            if word in _CLOSING:
+                awaited.append(_CLOSING[word])
+            elif not awaited or awaited.pop() != word:
+                problem, accepted = f"{word!r} closes nothing", "brackets that match"
+        elif kind == "number":
+            if apart and target:
+                target = []
+                line.groups.append(target)
+            apart = False
             if len(word) > MAX_DIGITS:
                 problem, accepted = f"a number of {len(word)} digits", f"at most {MAX_DIGITS} digits"
             else:
@@ -123,6 +139,10 @@ def _read_body(text: str, notation: str, tokens: list[tuple[str, str, int]]) -> 
             problem = f"{word!r} is out of place"
         if problem:
             raise ParseError(problem, where=_position(text, at), accepted=accepted)
+    if awaited:
+        raise ParseError(
+            f"{awaited[-1]!r} is missing", where=_position(text, len(text)), accepted="brackets that match"
+        )
     _check_complete(text, line)
     return line
 
@@ -155,7 +175,7 @@ def _tokens(text: str) -> list[tuple[str, str, int]]:
             raise ParseError(
                 f"{text[at]!r} is not read here",
                 where=_position(text, at),
-                accepted="names, whole numbers, signs, commas, ; and /",
+                accepted="names, whole numbers, signs, commas, brackets, ; and /",
             )
         kind = match.lastgroup or ""
         if kind != "space":

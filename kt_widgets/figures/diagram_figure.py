@@ -82,7 +82,7 @@ def diagram(
     Raises
     ------
     KtError
-        If the preset, the width or the outer face does not exist.
+        If `d` is no diagram, or the preset, the width or the outer face does not exist.
     LimitError
         Beyond 400 crossings.
 
@@ -92,6 +92,11 @@ def diagram(
     >>> picture.scene.title, len(picture.scene.at("crossing:3"))
     ('Diagram with 3 crossings and 1 component', 1)
     """
+    if not isinstance(d, Diagram):
+        raise KtError(
+            f"{type(d).__name__} is not drawn as a diagram",
+            accepted="a Diagram, such as Diagram.parse('braid 1 1 1')",
+        )
     look = preset_named(preset)
     layout = lay_out(d.slots, d.signs, d.circles, outer)
     few = max(len(d.arcs), len(d.slots)) <= _LETTERED

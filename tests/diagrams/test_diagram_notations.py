@@ -430,3 +430,22 @@ def test_numbers_too_long_to_print_are_refused():
     ):
         with pytest.raises(LimitError, match="a number of 16610 bits"):
             make()
+
+
+@pytest.mark.parametrize(
+    ("pasted", "line"),
+    [
+        ("planar [(1, 4, 2, 5), (5, 2, 6, 3), (3, 6, 4, 1)]", "planar 1,4,2,5; 5,2,6,3; 3,6,4,1"),
+        ("braid [1, -2, 1, -2]", "braid 1 -2 1 -2"),
+        ("gauss [[1, -2], [-1, 2]] signs [1, 1]", "gauss 1 -2 / -1 2 signs + +"),
+        ("dowker ([4], [2])", "dowker 4 / 2"),
+    ],
+)
+def test_pasted_python_lists_are_read(pasted: str, line: str):
+    assert Diagram.parse(pasted) == Diagram.parse(line)
+
+
+@pytest.mark.parametrize("text", ["braid (1", "braid 1)", "braid (1]", "planar [(1, 4, 2, 5)"])
+def test_brackets_must_match(text: str):
+    with pytest.raises(ParseError, match="line 1, column"):
+        Diagram.parse(text)

@@ -217,3 +217,8 @@ def test_no_scientific_library_is_loaded_for_a_small_picture() -> None:
     )
     done = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True, check=True)
     assert done.stdout.strip() == "[]"
+
+
+def test_only_diagrams_are_drawn() -> None:
+    with pytest.raises(KtError, match=r"str is not drawn as a diagram.*Diagram\.parse"):
+        diagram("braid 1 1 1")
