@@ -154,6 +154,12 @@ class Operations:
         self._left[i] = {j: f * unit for j, f in self._left[i].items()}
         self._left_inverse[i] = {j: f * inverse for j, f in self._left_inverse[i].items()}
 
+    def scale_column(self, j: int, unit: LaurentPolynomial) -> None:
+        """Column j is multiplied by a unit."""
+        inverse = unit.inverse()
+        self._right[j] = {i: f * unit for i, f in self._right[j].items()}
+        self._right_inverse[j] = {i: f * inverse for i, f in self._right_inverse[j].items()}
+
     def transforms(self, row_order: Sequence[int], column_order: Sequence[int]) -> Transforms:
         """The matrices, after rows and columns are put in these orders."""
         return Transforms(

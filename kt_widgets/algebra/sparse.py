@@ -58,8 +58,9 @@ def eliminate_units(rows: Rows, thrift: Thrift | None = None) -> list[Pivot]:
     With `thrift` only units that leave the rest sparse and its entries short are taken.
 
     The cost of a pivot is (entries beside it) * (entries below it) (H. M. Markowitz, The elimination form of
-    the inverse and its application to linear programming, Management Sci. 3 (1957)); ties go to the first
-    row, then the first column. A cost that fell since it was queued is noticed when its row changes.
+    the inverse and its application to linear programming, Management Sci. 3 (1957)); ties go to the entry
+    changed last, so that a band is eaten from its end and keeps its units, then to the first row and column.
+    A cost that fell since it was queued is noticed when its row changes.
 
     Examples
     --------
@@ -72,8 +73,9 @@ def eliminate_units(rows: Rows, thrift: Thrift | None = None) -> list[Pivot]:
     for i, row in enumerate(rows):
         for j in row:
             columns.setdefault(j, set()).add(i)
+    # Cost, minus the number of the step that last changed the entry, row, column.
     queue = [
-        ((len(row) - 1) * (len(columns[j]) - 1), i, j)
+        ((len(row) - 1) * (len(columns[j]) - 1), 0, i, j)
         for i, row in enumerate(rows)
         for j, entry in row.items()
         if entry.is_unit()
@@ -81,14 +83,14 @@ def eliminate_units(rows: Rows, thrift: Thrift | None = None) -> list[Pivot]:
     heapify(queue)
     pivots: list[Pivot] = []
     while queue:
-        cost, i, j = heappop(queue)
+        cost, step, i, j = heappop(queue)
         row = rows[i]
         entry = row.get(j)
         if entry is None or not entry.is_unit():
             continue
         current = (len(row) - 1) * (len(columns[j]) - 1)
         if current > cost:
-            heappush(queue, (current, i, j))
+            heappush(queue, (current, step, i, j))
             continue
         if thrift and (cost > thrift.fill or _predicted_span(rows, columns[j], i, j) > thrift.span):
             continue
@@ -119,7 +121,7 @@ def eliminate_units(rows: Rows, thrift: Thrift | None = None) -> list[Pivot]:
             width = len(other) - 1
             for c, value in other.items():
                 if value.is_unit():
-                    heappush(queue, (width * (len(columns[c]) - 1), k, c))
+                    heappush(queue, (width * (len(columns[c]) - 1), -len(pivots) - 1, k, c))
         pivots.append(Pivot(i, j, entry, tuple(below), row))
     return pivots
 
