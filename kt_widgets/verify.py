@@ -1,4 +1,4 @@
-"""Verify the chain of evidence in a dossier: ``python verify.py dossier.json``.
+"""Verify the chain of evidence in a dossier, or one certificate: ``python verify.py FILE.json``.
 
 This file stands alone: it needs Python's standard library (3.11 or later) and nothing else, and a copy
 travels in every dossier. It takes no result on trust. Whatever follows from the line that was typed is worked
@@ -50,6 +50,29 @@ by row. A word is ``[["a", 1], ["b", -1], ...]``, its letters as they stand.
     the SHA-256 of each of the sections from ``subject`` on, as JSON with sorted keys and without spaces. They
     guard against accidents and prove nothing.
 
+Certificates
+------------
+The package's ``to_json`` writes them with the same ``format`` and ``version``. Here all that is numbered
+in the file is numbered from 0, a polynomial has also ``over`` ("Z", "Q" or a prime), and so has a matrix; a
+combination is ``[[index, cofactor], ...]``. The places named here count from 1 all the same. By ``kind``:
+
+``smith form``, ``integer smith form``
+    ``U`` ``matrix`` ``V`` = ``D``, with ``U_inverse`` and ``V_inverse``; over a field, or of integers.
+``module certificate``
+    ``smith`` and the ``factors`` of the cokernel: without units, a 0 for each free summand.
+``isomorphism``
+    of cokernels, ``source`` A to ``target`` B: ``forward`` A = B ``forward_relations``, ``backward`` B =
+    A ``backward_relations``, ``backward`` ``forward`` = 1 + A ``source_identity``, ``forward`` ``backward`` =
+    1 + B ``target_identity``.
+``ideal certificate``
+    ``generators`` and the canonical ``basis``; ``basis_cofactors`` and ``generator_cofactors``: each as a
+    combination of the others.
+``fitting certificate``
+    ``P`` ``matrix`` ``Q`` = [1 0; 0 ``core``], with inverses; ``k``; ``minors``: rows and columns of the
+    minors of the core that are not 0; ``basis``; ``basis_cofactors`` and ``minor_cofactors`` as above.
+
+Comparisons, operators, cyclicity and cyclic covers are left to the package's own ``verify``.
+
 A crossing is positive when turning the over-strand counter-clockwise by less than 180 degrees gives the
 under-strand. Braid letter i is a positive crossing of strands i and i + 1. Where the strand b leaves as c
 under the arc a, c = a^-1 b a at a positive and c = a b a^-1 at a negative crossing.
@@ -66,10 +89,11 @@ from dataclasses import dataclass, field
 from fractions import Fraction
 from functools import partial
 from itertools import combinations, pairwise
-from math import comb, gcd
+from math import comb, gcd, isqrt
 from typing import Any
 
 __all__ = [
+    "CERTIFICATES",
     "FIELDS",
     "FORMAT",
     "KIND",
@@ -521,13 +545,18 @@ def _read_ideal(item: Item, k: int, core: Matrix) -> Ideal:
     )
 
 
-def _read(data: Any) -> Dossier:
+def _body(data: Any, expected: str) -> Item:
+    """What a file of this kind holds."""
     form, version, kind, body = Item(data, None, "").fields("format", "version", "kind", "data")
-    for item, name in ((form, FORMAT), (kind, KIND)):
+    for item, name in ((form, FORMAT), (kind, expected)):
         if item.text() != name:
             raise item.refuse(f"{json.dumps(name)} is expected")
     version.integer(VERSION, VERSION)
-    digests, *sections = Item(body.value, None, "").fields("digests", *SECTIONS)
+    return Item(body.value, None, "")
+
+
+def _read(data: Any) -> Dossier:
+    digests, *sections = _body(data, KIND).fields("digests", *SECTIONS)
     subject, planar, presentation, chains, homology, smith, ideals, polynomial = sections
     diagram = _read_diagram(planar)
     g, r = len(diagram.arcs), len(diagram.crossings)
@@ -806,19 +835,33 @@ def _homology(d: Dossier) -> str:
     return f"H_0 = Z[t,1/t]/({_show(d.h0)}); the 1-cycles have a basis of {g - 1}; relations of H_1"
 
 
+def _check_equivalence(
+    place: str, names: Sequence[str], a: Matrix, form: Matrix, transforms: Sequence[Matrix], p: int = 0
+) -> None:
+    """Refuse unless U a V is the form; the transforms are U, its inverse, V and its inverse."""
+    left, left_inverse, right, right_inverse = transforms
+    u, middle, v = names
+    _compare(f"{place}: {u} {u}_inverse", _product(left, left_inverse, p), _identity(left.rows))
+    _compare(f"{place}: {v} {v}_inverse", _product(right, right_inverse, p), _identity(right.rows))
+    _compare(f"{place}: {u} {middle} {v}", _product(_product(left, a, p), right, p), form)
+
+
+def _check_diagonal(place: str, diagonal: Sequence[Poly], p: int) -> None:
+    for i, f in enumerate(diagonal, 1):
+        if f and (min(f) != 0 or f[max(f)] != 1):
+            raise Refusal(f"{place}[{i}]", "monic with lowest exponent 0 is expected")
+        if i > 1 and f and (not diagonal[i - 2] or _rest(f, diagonal[i - 2], p)):
+            raise Refusal(f"{place}[{i}]", "the entry before does not divide it")
+
+
 def _field(d: Dossier, s: Smith) -> str:
     place, p = f"fields[{s.ring}]", s.ring if isinstance(s.ring, int) else 0
     size = d.h1_relations.rows
-    _compare(f"{place}: U U_inverse", _product(s.U, s.U_inverse, p), _identity(s.U.rows))
-    _compare(f"{place}: V V_inverse", _product(s.V, s.V_inverse, p), _identity(s.V.rows))
-    form = _product(_product(s.U, d.h1_relations, p), s.V, p)
     stated = {(i, i): f for i, f in enumerate(s.diagonal, 1) if f}
-    _compare(f"{place}: U h1_relations V", form, Matrix(form.rows, form.columns, stated))
-    for i, f in enumerate(s.diagonal, 1):
-        if f and (min(f) != 0 or f[max(f)] != 1):
-            raise Refusal(f"{place}.diagonal[{i}]", "monic with lowest exponent 0 is expected")
-        if i > 1 and f and (not s.diagonal[i - 2] or _rest(f, s.diagonal[i - 2], p)):
-            raise Refusal(f"{place}.diagonal[{i}]", "the entry before does not divide it")
+    form = Matrix(size, d.h1_relations.columns, stated)
+    transforms = (s.U, s.U_inverse, s.V, s.V_inverse)
+    _check_equivalence(place, ("U", "h1_relations", "V"), d.h1_relations, form, transforms, p)
+    _check_diagonal(f"{place}.diagonal", s.diagonal, p)
     whole = s.diagonal + [{}] * (size - len(s.diagonal))
     kept = [i for i, f in enumerate(whole, 1) if f != {0: 1}]
     if s.factors != [whole[i - 1] for i in kept]:
@@ -835,14 +878,17 @@ def _field(d: Dossier, s: Smith) -> str:
     return f"over {name}, H_1 = {' + '.join(summands) or '0'}, {how}"
 
 
+def _with_ones(pivots: int, core: Matrix) -> Matrix:
+    """[1 0; 0 core]."""
+    form = Matrix(pivots + core.rows, pivots + core.columns, _identity(pivots).entries)
+    form.entries.update({(pivots + i, pivots + j): f for (i, j), f in core.entries.items()})
+    return form
+
+
 def _elimination(d: Dossier) -> str:
-    _compare("ideals: P P_inverse", _product(d.P, d.P_inverse), _identity(d.P.rows))
-    _compare("ideals: Q Q_inverse", _product(d.Q, d.Q_inverse), _identity(d.Q.rows))
     pivots = d.P.rows - d.core.rows
-    blocks = _identity(pivots).entries
-    blocks.update({(pivots + i, pivots + j): f for (i, j), f in d.core.entries.items()})
-    form = _product(_product(d.P, d.boundary2), d.Q)
-    _compare("ideals: P boundary2 Q", form, Matrix(form.rows, form.columns, blocks))
+    form, transforms = _with_ones(pivots, d.core), (d.P, d.P_inverse, d.Q, d.Q_inverse)
+    _check_equivalence("ideals", ("P", "boundary2", "Q"), d.boundary2, form, transforms)
     return f"boundary2 is equivalent to {pivots} times 1 and a core of {d.core.rows} x {d.core.columns}"
 
 
@@ -978,8 +1024,246 @@ def _polynomial(d: Dossier) -> str:
     return f"the Alexander polynomial is {_show(f)}, up to units"
 
 
+# ------------------------------------------------------------------------------- certificates alone
+# Each takes the data of its kind and refuses, or says in words what holds now.
+
+
+def _ring(item: Item) -> Ring:
+    ring = item.value
+    if ring in ("Z", "Q") and type(ring) is str:
+        return str(ring)
+    p = item.integer(2, 2**31)
+    if any(p % q == 0 for q in range(2, isqrt(p) + 1)):
+        raise item.refuse('"Z", "Q" or a prime is expected')
+    return p
+
+
+def _over(item: Item, ring: Ring) -> None:
+    if type(item.value) is not type(ring) or item.value != ring:
+        raise item.refuse(f"{json.dumps(ring)} is expected")
+
+
+def _poly(item: Item, ring: Ring) -> Poly:
+    """A polynomial that names its ring."""
+    lowest, coefficients, over = item.fields("lowest", "coefficients", "over")
+    _over(over, ring)
+    return Item({"lowest": lowest.value, "coefficients": coefficients.value}, item.holder, item.at).poly(ring)
+
+
+def _polys(item: Item, ring: Ring) -> list[Poly]:
+    return [_poly(one, ring) for one in item.items()]
+
+
+def _matrix(item: Item, ring: Ring, rows: int | None = None, columns: int | None = None) -> Matrix:
+    """A matrix that names its ring and counts from 0; a side that is not given is as stated."""
+    shape, over, entries = item.fields("shape", "over", "entries")
+    _over(over, ring)
+    height, width = (side.integer(0, 10**6) for side in shape.items(2))
+    if rows is not None and (height, width) != (rows, columns):
+        raise shape.refuse(f"[{rows}, {columns}] is expected")
+    matrix, last = Matrix(height, width), (-1, -1)
+    for one in entries.items():
+        i, j, entry = one.items(3)
+        spot = (i.integer(0, height - 1), j.integer(0, width - 1))
+        f = _poly(Item(entry.value, item, (spot[0] + 1, spot[1] + 1)), ring)
+        if spot <= last or not f:
+            raise one.refuse("entries are listed row by row, each once, without zeros")
+        matrix.entries[spot[0] + 1, spot[1] + 1], last = f, spot
+    return matrix
+
+
+def _smith(item: Item, integers: bool = False) -> tuple[Matrix, list[Poly], Ring]:
+    """The matrix, the diagonal and the ring of a Smith form that holds."""
+    a, d, *sides = item.fields("matrix", "D", "U", "U_inverse", "V", "V_inverse")
+    ring = _ring(a.fields("shape", "over", "entries")[1])
+    if (ring == "Z") != integers:
+        raise a.refuse("the integers are expected" if integers else "a field is expected")
+    matrix, p = _matrix(a, ring), ring if isinstance(ring, int) else 0
+    form = _matrix(d, ring, matrix.rows, matrix.columns)
+    sizes = (matrix.rows, matrix.rows, matrix.columns, matrix.columns)
+    transforms = [_matrix(side, ring, n, n) for side, n in zip(sides, sizes, strict=True)]
+    if integers:
+        for side, m in zip((a, d, *sides), (matrix, form, *transforms), strict=True):
+            for (i, j), f in m.entries.items():
+                if f.keys() != {0}:
+                    raise Refusal(f"{side.place}[{i},{j}]", "an integer is expected")
+    _check_equivalence(item.place or "smith form", ("U", "matrix", "V"), matrix, form, transforms, p)
+    diagonal = [form.entries.get((i, i), {}) for i in range(1, min(form.rows, form.columns) + 1)]
+    for i, j in form.entries:
+        if i != j:
+            raise Refusal(f"{d.place}[{i},{j}]", "0 is expected off the diagonal")
+    if integers:
+        for i, f in enumerate(diagonal, 1):
+            if f and (f[0] < 0 or (i > 1 and (not diagonal[i - 2] or f[0] % diagonal[i - 2][0]))):
+                raise Refusal(
+                    f"{d.place}[{i},{i}]", "not negative, and divided by the one before, is expected"
+                )
+    else:
+        _check_diagonal(d.place, diagonal, p)
+    return matrix, diagonal, ring
+
+
+def _smith_form(item: Item) -> str:
+    _, diagonal, ring = _smith(item)
+    return f"U A V = D over {ring}, with diagonal {_show_ideal(diagonal)}"
+
+
+def _integer_smith_form(item: Item) -> str:
+    _, diagonal, _ = _smith(item, integers=True)
+    return f"U A V = D over the integers, with diagonal {_show_ideal(diagonal)}"
+
+
+def _module_certificate(item: Item) -> str:
+    smith, factors = item.fields("smith", "factors")
+    matrix, diagonal, ring = _smith(smith)
+    expected = [f for f in diagonal if f != {0: 1}]
+    expected += [{}] * (matrix.rows - len(diagonal))
+    stated = _polys(factors, ring)
+    for i, (f, g) in enumerate(zip(stated, expected, strict=False), 1):
+        if f != g:
+            raise Refusal(f"factors[{i}]", f"{_show(f)}, where {_show(g)} is expected")
+    if len(stated) != len(expected):
+        raise factors.refuse(f"{len(expected)} factors are expected")
+    return f"over {ring} the invariant factors are {_show_ideal(stated)}"
+
+
+def _isomorphism(item: Item) -> str:
+    a, b, f, g, x, y, z, w = item.fields(
+        "source",
+        "target",
+        "forward",
+        "backward",
+        "forward_relations",
+        "backward_relations",
+        "source_identity",
+        "target_identity",
+    )
+    ring = _ring(a.fields("shape", "over", "entries")[1])
+    p = ring if isinstance(ring, int) else 0
+    A, B = _matrix(a, ring), _matrix(b, ring)
+    F, G = _matrix(f, ring, B.rows, A.rows), _matrix(g, ring, A.rows, B.rows)
+    X, Y = _matrix(x, ring, B.columns, A.columns), _matrix(y, ring, A.columns, B.columns)
+    Z, W = _matrix(z, ring, A.columns, A.rows), _matrix(w, ring, B.columns, B.rows)
+    _compare("forward source", _product(F, A, p), _product(B, X, p))
+    _compare("backward target", _product(G, B, p), _product(A, Y, p))
+    _compare("backward forward", _product(G, F, p), _one_plus(_product(A, Z, p), p))
+    _compare("forward backward", _product(F, G, p), _one_plus(_product(B, W, p), p))
+    return f"the cokernels of source and target over {ring} are isomorphic"
+
+
+def _one_plus(matrix: Matrix, p: int) -> Matrix:
+    entries = dict(matrix.entries)
+    for i in range(1, matrix.rows + 1):
+        entries[i, i] = _plus(entries.get((i, i), {}), {0: 1}, p)
+    return Matrix(matrix.rows, matrix.columns, {spot: f for spot, f in entries.items() if f})
+
+
+def _check_combinations(item: Item, targets: Sequence[Poly], elements: Sequence[Poly]) -> None:
+    """Refuse unless each target is the stated combination of the elements."""
+    for row, target in zip(item.items(len(targets)), targets, strict=True):
+        last, terms = -1, []
+        for pair in row.items():
+            index, cofactor = pair.items(2)
+            k, f = index.integer(0, len(elements) - 1), _poly(cofactor, "Z")
+            if k <= last or not f or not elements[k]:
+                raise pair.refuse("rising indices, cofactors and elements that are not 0 are expected")
+            terms.append((f, elements[k]))
+            last = k
+        total = _combination(terms)
+        if total != target:
+            raise row.refuse(f"the combination is {_show(total)}, where {_show(target)} is expected")
+
+
+def _ideal_certificate(item: Item) -> str:
+    generators, basis, from_generators, from_basis = item.fields(
+        "generators", "basis", "basis_cofactors", "generator_cofactors"
+    )
+    given, canonical = _polys(generators, "Z"), _polys(basis, "Z")
+    _check_combinations(from_generators, canonical, given)
+    _check_combinations(from_basis, given, canonical)
+    _canonical(canonical, "ideal")
+    return f"the generators span the ideal with canonical basis {_show_ideal(canonical)}"
+
+
+def _fitting_certificate(item: Item) -> str:
+    a, left, left_inverse, right, right_inverse, c, index, minors, basis, from_minors, from_basis = (
+        item.fields(
+            "matrix",
+            "P",
+            "P_inverse",
+            "Q",
+            "Q_inverse",
+            "core",
+            "k",
+            "minors",
+            "basis",
+            "basis_cofactors",
+            "minor_cofactors",
+        )
+    )
+    matrix, core, k = _matrix(a, "Z"), _matrix(c, "Z"), index.integer(0, 10**6)
+    pivots = matrix.rows - core.rows
+    if pivots < 0 or core.columns != matrix.columns - pivots:
+        raise c.refuse("the shape of the matrix without as many rows as columns is expected")
+    if core.rows > MAX_CORE or _count(core, k) > MAX_MINORS:
+        raise c.refuse(f"more than {MAX_CORE} rows or {MAX_MINORS} minors: left to the package")
+    rows, columns = matrix.rows, matrix.columns
+    transforms = [_matrix(side, "Z", rows, rows) for side in (left, left_inverse)]
+    transforms += [_matrix(side, "Z", columns, columns) for side in (right, right_inverse)]
+    _check_equivalence(
+        "fitting certificate", ("P", "matrix", "Q"), matrix, _with_ones(pivots, core), transforms
+    )
+    found = _Minors(core).nonzero(max(core.rows - k, 0))
+    stated = []
+    for one in minors.items():
+        sides = [side.items() for side in one.items(2)]
+        stated.append(tuple(tuple(n.integer(0, 10**6) + 1 for n in side) for side in sides))
+    if stated != list(found):
+        raise minors.refuse(f"the {len(found)} minors that are not 0 are expected, in order")
+    canonical = _polys(basis, "Z")
+    _check_combinations(from_minors, canonical, list(found.values()))
+    _check_combinations(from_basis, list(found.values()), canonical)
+    _canonical(canonical, "fitting certificate")
+    return f"Fitting ideal {k} has the canonical basis {_show_ideal(canonical)}"
+
+
+CERTIFICATES: dict[str, Callable[[Item], str]] = {
+    "fitting certificate": _fitting_certificate,
+    "ideal certificate": _ideal_certificate,
+    "integer smith form": _integer_smith_form,
+    "isomorphism": _isomorphism,
+    "module certificate": _module_certificate,
+    "smith form": _smith_form,
+}
+"""The check of each kind of certificate."""
+
+
+def _kind(data: Any) -> str | None:
+    """The kind that the data state, if it is a text."""
+    kind = data.get("kind") if type(data) is dict else None
+    return kind if type(kind) is str else None
+
+
+def _outcome(name: str, check: Callable[[], str]) -> tuple[str, str, bool]:
+    try:
+        return name, check(), True
+    except Refusal as refusal:
+        return name, str(refusal), False
+    except (ArithmeticError, LookupError, TypeError, ValueError, RecursionError) as error:
+        # Statements that contradict each other so badly that this check cannot be set up.
+        return name, f"{name}: cannot be checked ({type(error).__name__}: {error})", False
+
+
+def _certificate(data: Any, kind: str) -> str:
+    return CERTIFICATES[kind](_body(data, kind))
+
+
 def results(data: Any) -> Iterator[tuple[str, str, bool]]:
     """Name, sentence and outcome of each check."""
+    kind = _kind(data)
+    if kind in CERTIFICATES:
+        yield _outcome(kind, partial(_certificate, data, kind))
+        return
     try:
         dossier = _read(data)
     except Refusal as refusal:
@@ -1003,18 +1287,11 @@ def results(data: Any) -> Iterator[tuple[str, str, bool]]:
     checks += [(f"ideal {ideal.k}", partial(_ideal, dossier, ideal, minors)) for ideal in small]
     checks.append(("polynomial", partial(_polynomial, dossier)))
     for name, check in checks:
-        try:
-            sentence, holds = check(), True
-        except Refusal as refusal:
-            sentence, holds = str(refusal), False
-        except (ArithmeticError, LookupError, TypeError, ValueError, RecursionError) as error:
-            # Statements that contradict each other so badly that this check cannot be set up.
-            sentence, holds = f"{name}: cannot be checked ({type(error).__name__}: {error})", False
-        yield name, sentence, holds
+        yield _outcome(name, check)
 
 
 def verify(data: Any) -> list[str]:
-    """The failures of a dossier, given as the data that `json.load` makes: an empty list if all checks hold.
+    """The failures of a dossier or certificate, given as `json.load` makes it: empty if all checks hold.
 
     Examples
     --------
@@ -1039,7 +1316,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     """Check the file named on the command line and print a line for each check."""
     arguments = sys.argv[1:] if arguments is None else arguments
     if len(arguments) != 1 or arguments[0].startswith("-"):
-        print("usage: python verify.py dossier.json", file=sys.stderr)
+        print("usage: python verify.py FILE.json", file=sys.stderr)
         return 2
     try:
         with open(arguments[0], "rb") as file:
@@ -1049,6 +1326,13 @@ def main(arguments: Sequence[str] | None = None) -> int:
         data = json.loads(content.decode("utf-8"), object_pairs_hook=_pairs, parse_constant=_no_constant)
     except (OSError, ValueError, RecursionError) as error:
         print(f"{arguments[0]}: cannot be read: {error}", file=sys.stderr)
+        return 2
+    kind = _kind(data)
+    if kind is not None and kind not in (KIND, *CERTIFICATES):
+        known = ", ".join((KIND, *CERTIFICATES))
+        print(
+            f"{arguments[0]}: kind {json.dumps(kind)} is not verified here; known: {known}", file=sys.stderr
+        )
         return 2
     outcomes = []
     for name, sentence, holds in results(data):
