@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+import reprlib
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from operator import index
 from typing import Any, TypeAlias
@@ -68,8 +69,11 @@ class Ideal(Portable, kind="ideal"):
     _basis: tuple[LaurentPolynomial, ...]
 
     def __init__(self, generators: Sequence[LaurentPolynomial | Scalar | str]) -> None:
-        if isinstance(generators, str):
-            raise AlgebraError("one text is no list of generators", accepted="Ideal.parse(text), or a list")
+        if isinstance(generators, str) or not isinstance(generators, Iterable):
+            raise AlgebraError(
+                f"{reprlib.repr(generators)} is no list of generators",
+                accepted="Ideal.parse(text), or a list",
+            )
         self._basis = _canonical([f for g in generators if (f := _element(g))])
 
     @classmethod

@@ -363,9 +363,6 @@ def _matrix(value: LaurentMatrix | Sequence[Sequence[Entry]] | str, over: RingNa
         return value.change_ring(over)
     if isinstance(value, str):
         return LaurentMatrix.parse(value, over)
-    for row in value:
-        if not isinstance(row, list | tuple):
-            raise AlgebraError(f"{row!r} is no row", accepted='a list of lists, such as [["t - 1", "t - 1"]]')
     return LaurentMatrix(value, over)
 
 

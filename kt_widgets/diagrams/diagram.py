@@ -661,6 +661,8 @@ class Diagram(Portable, kind="diagram"):
         >>> trefoil.same_diagram(trefoil.mirror()) is None
         True
         """
+        if not isinstance(other, Diagram):
+            raise DiagramError(f"{type(other).__name__} is no diagram", accepted="a Diagram to compare with")
         if (len(self.slots), self.circles, self.writhe) != (len(other.slots), other.circles, other.writhe):
             return None
         image: dict[int, int] = {}

@@ -241,6 +241,9 @@ def compare(m: Module, n: Module) -> Comparison:
     >>> print(compare(m.over("Q"), n.over("Q")).verdict, compare(m, m.conjugate()).verdict)
     isomorphic isomorphic
     """
+    for value in (m, n):
+        if not isinstance(value, Module):
+            raise AlgebraError(f"{type(value).__name__} is no module", accepted="two modules over one ring")
     if m.ring != n.ring:
         raise AlgebraError(
             f"modules over {m.ring!r} and {n.ring!r} are not compared", accepted="modules over one ring"

@@ -97,6 +97,8 @@ def parse_json(text: str) -> Any:
     >>> parse_json('{"a": [1, 2]}')
     {'a': [1, 2]}
     """
+    if not isinstance(text, str):
+        raise ParseError(f"{type(text).__name__} is no text", accepted="the text that to_json gives")
     if len(text) > MAX_JSON:
         raise LimitError(f"JSON text of {len(text)} characters", accepted=f"at most {MAX_JSON}")
     try:

@@ -103,7 +103,7 @@ def test_boundaries_are_multiplied_out():
     ("first", "second", "said"),
     [
         ("t - 1, t - 1", "0; 0; 0", r"boundary\(1\) has 2 columns, boundary\(2\) has 3 rows"),
-        (["t - 1"], "0", "is no row"),
+        (["t - 1"], "0", "is no list of rows"),
         ([["t - 1", 0], [1]], "0; 0", "row 2 has 1 entries"),
     ],
 )
