@@ -8,14 +8,13 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
-from typing import Any
 
 from kt_widgets.algebra.elimination import Transforms, eliminate
 from kt_widgets.algebra.flint_rings import hermite_transform, integer_inverse, smith_diagonal
 from kt_widgets.algebra.laurent import LaurentPolynomial, subtract_product
 from kt_widgets.algebra.matrix import LaurentMatrix
+from kt_widgets.algebra.smith import SMITH_MATRICES, SmithMatrices
 from kt_widgets.errors import AlgebraError, CertificateError, LimitError
-from kt_widgets.text.portable import Portable
 
 __all__ = [
     "MAX_INTEGER_SIDE",
@@ -30,7 +29,7 @@ MAX_INTEGER_SIDE = 3000
 
 
 @dataclass(frozen=True)
-class IntegerSmithForm(Portable, kind="integer smith form"):
+class IntegerSmithForm(SmithMatrices, kind="integer smith form"):
     """U A V = D over the integers, U and V invertible, D diagonal, each entry dividing the next.
 
     The diagonal is not negative; ones come first and zeros last. All six matrices have constant entries.
@@ -41,13 +40,6 @@ class IntegerSmithForm(Portable, kind="integer smith form"):
     >>> s.diagonal, s.verify()
     ((2, 10), True)
     """
-
-    matrix: LaurentMatrix
-    D: LaurentMatrix
-    U: LaurentMatrix
-    U_inverse: LaurentMatrix
-    V: LaurentMatrix
-    V_inverse: LaurentMatrix
 
     @property
     def diagonal(self) -> tuple[int, ...]:
@@ -67,32 +59,10 @@ class IntegerSmithForm(Portable, kind="integer smith form"):
         CertificateError
             Naming the entry of a matrix or product that is wrong.
         """
-        for name in _NAMES:
+        for name in SMITH_MATRICES:
             _check_integers(getattr(self, name), name)
-        Transforms(self.U, self.U_inverse, self.V, self.V_inverse).verify(
-            self.matrix, self.D, ("U", "A", "V")
-        )
-        for i, j, f in self.D.entries():
-            where = f"entry ({i + 1}, {j + 1}) of D"
-            if i != j:
-                raise CertificateError(f"D is {f} off the diagonal", where=where)
-            if f != f.normal_form():
-                raise CertificateError(f"{f} is negative", where=where)
-            if i and not self.D[i - 1, i - 1].divides(f):
-                raise CertificateError(f"{self.D[i - 1, i - 1]} does not divide {f}", where=where)
+        self.check_products("negative")
         return True
-
-    def to_data(self) -> dict[str, Any]:
-        """The six matrices by name."""
-        return {name: getattr(self, name).to_data() for name in _NAMES}
-
-    @classmethod
-    def from_data(cls, data: Any) -> IntegerSmithForm:
-        """Read `to_data` back; call `verify` before believing it."""
-        return cls(*(LaurentMatrix.from_data(data[name]) for name in _NAMES))
-
-
-_NAMES = ("matrix", "D", "U", "U_inverse", "V", "V_inverse")
 
 
 def _check_integers(matrix: LaurentMatrix, name: str) -> None:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, Self
 
 from kt_widgets.algebra.diagonal import Core, diagonalise
 from kt_widgets.algebra.elimination import Transforms, eliminate
@@ -13,11 +13,55 @@ from kt_widgets.algebra.matrix import LaurentMatrix
 from kt_widgets.errors import AlgebraError, CertificateError
 from kt_widgets.text.portable import Portable
 
-__all__ = ["SmithForm", "invariant_factors", "smith_form"]
+__all__ = ["SMITH_MATRICES", "SmithForm", "SmithMatrices", "invariant_factors", "smith_form"]
+
+
+SMITH_MATRICES = ("matrix", "D", "U", "U_inverse", "V", "V_inverse")
 
 
 @dataclass(frozen=True)
-class SmithForm(Portable, kind="smith form"):
+class SmithMatrices(Portable):
+    """The matrices of U A V = D with both inverses: what Smith forms over a field and over Z share."""
+
+    matrix: LaurentMatrix
+    D: LaurentMatrix
+    U: LaurentMatrix
+    U_inverse: LaurentMatrix
+    V: LaurentMatrix
+    V_inverse: LaurentMatrix
+
+    def check_products(self, abnormal: str) -> None:
+        """Multiply out; D must be diagonal and normal, which `abnormal` denies, each entry dividing the next.
+
+        Raises
+        ------
+        CertificateError
+            Naming the entry of U U_inverse, V V_inverse, U A V or D that is wrong.
+        """
+        Transforms(self.U, self.U_inverse, self.V, self.V_inverse).verify(
+            self.matrix, self.D, ("U", "A", "V")
+        )
+        for i, j, f in self.D.entries():
+            where = f"entry ({i + 1}, {j + 1}) of D"
+            if i != j:
+                raise CertificateError(f"D is {f} off the diagonal", where=where)
+            if f != f.normal_form():
+                raise CertificateError(f"{f} is {abnormal}", where=where)
+            if i and not self.D[i - 1, i - 1].divides(f):
+                raise CertificateError(f"{self.D[i - 1, i - 1]} does not divide {f}", where=where)
+
+    def to_data(self) -> dict[str, Any]:
+        """The six matrices by name."""
+        return {name: getattr(self, name).to_data() for name in SMITH_MATRICES}
+
+    @classmethod
+    def from_data(cls, data: Any) -> Self:
+        """Read `to_data` back; call `verify` before believing it."""
+        return cls(*(LaurentMatrix.from_data(data[name]) for name in SMITH_MATRICES))
+
+
+@dataclass(frozen=True)
+class SmithForm(SmithMatrices, kind="smith form"):
     """U A V = D with U and V invertible and D diagonal, each diagonal entry dividing the next.
 
     The nonzero diagonal entries are monic with lowest exponent 0; zeros come last.
@@ -29,13 +73,6 @@ class SmithForm(Portable, kind="smith form"):
     [[1, 0              ],
      [0, 1 - 5/2 t + t^2]] True
     """
-
-    matrix: LaurentMatrix
-    D: LaurentMatrix
-    U: LaurentMatrix
-    U_inverse: LaurentMatrix
-    V: LaurentMatrix
-    V_inverse: LaurentMatrix
 
     @property
     def diagonal(self) -> tuple[LaurentPolynomial, ...]:
@@ -52,30 +89,8 @@ class SmithForm(Portable, kind="smith form"):
         """
         if not ring(self.matrix.over).is_field:
             raise CertificateError("Z[t,1/t] has no Smith form", where="matrix", accepted="a field")
-        Transforms(self.U, self.U_inverse, self.V, self.V_inverse).verify(
-            self.matrix, self.D, ("U", "A", "V")
-        )
-        for i, j, f in self.D.entries():
-            where = f"entry ({i + 1}, {j + 1}) of D"
-            if i != j:
-                raise CertificateError(f"D is {f} off the diagonal", where=where)
-            if f != f.normal_form():
-                raise CertificateError(f"{f} is not monic with lowest exponent 0", where=where)
-            if i and not self.D[i - 1, i - 1].divides(f):
-                raise CertificateError(f"{self.D[i - 1, i - 1]} does not divide {f}", where=where)
+        self.check_products("not monic with lowest exponent 0")
         return True
-
-    def to_data(self) -> dict[str, Any]:
-        """The six matrices by name."""
-        return {name: getattr(self, name).to_data() for name in _NAMES}
-
-    @classmethod
-    def from_data(cls, data: Any) -> SmithForm:
-        """Read `to_data` back; call `verify` before believing it."""
-        return cls(*(LaurentMatrix.from_data(data[name]) for name in _NAMES))
-
-
-_NAMES = ("matrix", "D", "U", "U_inverse", "V", "V_inverse")
 
 
 def smith_form(matrix: LaurentMatrix) -> SmithForm:
